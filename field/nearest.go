@@ -84,7 +84,7 @@ func (m *Mesh) buildTree() {
 	})
 	slices.SortFunc(list, func(a, b coded) int {
 		switch {
-		case a.code != b.code && a.code < b.code, a.code == b.code && a.tri < b.tri:
+		case a.code < b.code, a.code == b.code && a.tri < b.tri:
 			return -1
 		}
 		return 1
