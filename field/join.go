@@ -1,51 +1,44 @@
 package field
 
-import "shearprint/field/r3"
+import (
+	"cmp"
+	"slices"
+
+	"shearprint/field/r3"
+)
 
 // join finds each half-edge's twin by sorting the half-edges by their lower vertex. An edge with more than two triangles
 // gets no twins at all: which sheets belong together cannot be known.
 func (r *repair) join() {
-	n := int32(3 * len(r.tris))
+	n := 3 * len(r.tris)
 	r.twin = make([]int32, n)
 	tail := func(h int32) int32 { return r.tris[h/3][h%3] }
 	tip := func(h int32) int32 { return tail(Next(h)) }
-	start := make([]int32, len(r.point)+1)
-	for h := range n {
-		start[min(tail(h), tip(h))+1]++
-	}
-	for v := range r.point {
-		start[v+1] += start[v]
-	}
-	sorted := make([]int32, n)
-	fill := append([]int32(nil), start...)
-	for h := range n {
-		low := min(tail(h), tip(h))
-		sorted[fill[low]] = h
-		fill[low]++
-	}
+	start, sorted := buckets(len(r.point), n, func(h int32) int32 { return min(tail(h), tip(h)) })
+	high := func(h int32) int32 { return max(tail(h), tip(h)) }
 	cut, where := 0, ""
 	for v := range r.point {
 		bucket := sorted[start[v]:start[v+1]]
-		for i, h := range bucket {
-			high := max(tail(h), tip(h))
-			mate, count, firstOfEdge := int32(-1), 0, true
-			for j, g := range bucket {
-				if g != h && max(tail(g), tip(g)) == high {
-					mate = g
-					count++
-					firstOfEdge = firstOfEdge && j > i
+		slices.SortFunc(bucket, func(h, g int32) int { return cmp.Or(cmp.Compare(high(h), high(g)), cmp.Compare(h, g)) })
+		for len(bucket) > 0 {
+			n := 1
+			for n < len(bucket) && high(bucket[n]) == high(bucket[0]) {
+				n++
+			}
+			edge := bucket[:n]
+			bucket = bucket[n:]
+			for _, h := range edge {
+				r.twin[h] = -1
+			}
+			switch {
+			case n == 2:
+				r.twin[edge[0]], r.twin[edge[1]] = edge[1], edge[0]
+			case n > 2:
+				cut++
+				if where == "" {
+					where = place(r.pos(tail(edge[0])))
 				}
 			}
-			if count > 1 {
-				mate = -1
-				if firstOfEdge {
-					cut++
-					if where == "" {
-						where = place(r.pos(tail(h)))
-					}
-				}
-			}
-			r.twin[h] = mate
 		}
 	}
 	if cut > 0 {

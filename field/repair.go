@@ -1,7 +1,9 @@
 package field
 
 import (
+	"cmp"
 	"fmt"
+	"slices"
 
 	"shearprint/field/r3"
 )
@@ -147,26 +149,49 @@ func (r *repair) sliver(t [3]int32) (a, b int32, thin bool) {
 
 // dropDoubles removes triangles that have the same three corners as an earlier one, in whatever order.
 func (r *repair) dropDoubles() {
-	seen := make(map[[3]int32]bool, len(r.tris))
-	count, first := r.keep(func(t int) bool {
-		c := r.tris[t]
-		if c[0] > c[1] {
-			c[0], c[1] = c[1], c[0]
+	low := func(t int32) int32 { return min(r.tris[t][0], r.tris[t][1], r.tris[t][2]) }
+	start, sorted := buckets(len(r.point), len(r.tris), low)
+	double := make([]bool, len(r.tris))
+	for v := range r.point {
+		bucket := sorted[start[v]:start[v+1]]
+		slices.SortFunc(bucket, func(t, u int32) int {
+			a, b := r.tris[t], r.tris[u]
+			return cmp.Or(cmp.Compare(max(a[0], a[1], a[2]), max(b[0], b[1], b[2])),
+				cmp.Compare(middle(a), middle(b)), cmp.Compare(t, u))
+		})
+		for i := 1; i < len(bucket); i++ {
+			a, b := r.tris[bucket[i-1]], r.tris[bucket[i]]
+			double[bucket[i]] = max(a[0], a[1], a[2]) == max(b[0], b[1], b[2]) && middle(a) == middle(b)
 		}
-		if c[1] > c[2] {
-			c[1], c[2] = c[2], c[1]
-		}
-		if c[0] > c[1] {
-			c[0], c[1] = c[1], c[0]
-		}
-		if seen[c] {
-			return true
-		}
-		seen[c] = true
-		return false
-	})
+	}
+	count, first := r.keep(func(t int) bool { return double[t] })
 	if count > 0 {
 		r.find(Repaired, "dropped-doubles", count, fmt.Sprintf("triangle %d", first),
 			"%d triangles lay on top of others and were dropped", count)
 	}
+}
+
+// middle returns the second largest of three numbers.
+func middle(c [3]int32) int32 {
+	return max(min(c[0], c[1]), min(max(c[0], c[1]), c[2]))
+}
+
+// buckets sorts the numbers 0..n-1 by key, which lies in [0, keys): those with key k are sorted[start[k]:start[k+1]], in
+// ascending order.
+func buckets(keys, n int, key func(i int32) int32) (start, sorted []int32) {
+	start = make([]int32, keys+1)
+	for i := range int32(n) {
+		start[key(i)+1]++
+	}
+	for k := range keys {
+		start[k+1] += start[k]
+	}
+	sorted = make([]int32, n)
+	fill := append([]int32(nil), start...)
+	for i := range int32(n) {
+		k := key(i)
+		sorted[fill[k]] = i
+		fill[k]++
+	}
+	return start, sorted
 }

@@ -200,3 +200,18 @@ func TestAnySoupBecomesManifold(t *testing.T) {
 		}
 	})
 }
+
+// A hub with very many triangles must not cost the square of their number: the test would take hours if it did.
+func TestHubOfManyTriangles(t *testing.T) {
+	const n = 300_000
+	raw := field.Raw{Points: []r3.Vec{{Z: 1}}}
+	for i := range n {
+		s, c := r3.SinCos(2 * math.Pi * float64(i) / n)
+		raw.Points = append(raw.Points, r3.Vec{X: c, Y: s})
+		raw.Tris = append(raw.Tris, [3]int32{0, int32(1 + i), int32(1 + (i+1)%n)})
+	}
+	f, err := field.Build(withTau(raw))
+	if err != nil || f.Euler() != 1 {
+		t.Fatalf("%v, chi %d", err, f.Euler())
+	}
+}
