@@ -1,0 +1,88 @@
+package format
+
+import (
+	"errors"
+	"path"
+	"strings"
+
+	"shearprint/field"
+	"shearprint/field/r3"
+)
+
+// Read reads the file in its own unit and as its own connectivity has it. The kind is told from the content; a gzipped
+// file is unpacked. Values without triangles are matched to opt.Surface. The error is a *SyntaxError.
+func Read(name string, data []byte, opt Options) (field.Raw, error) {
+	data, err := unpack(name, data)
+	if err != nil {
+		return field.Raw{}, err
+	}
+	raw, err := read(name, data, opt)
+	if err != nil {
+		return field.Raw{}, err
+	}
+	if raw.Name == "" {
+		raw.Name = shortName(name)
+	}
+	return raw, nil
+}
+
+// Prepare reads the file and does all that comes before repair: units, mirroring, welding, sign. Its result can be built
+// or, without loss at sharp edges, written.
+func Prepare(name string, data []byte, opt Options) (field.Raw, error) {
+	raw, err := Read(name, data, opt)
+	if err != nil {
+		return field.Raw{}, err
+	}
+	src := source{name}
+	if raw.Tau == nil && raw.FaceTau == nil {
+		return field.Raw{}, src.fail("", "name the column or array with --tau, or use the file as --surface",
+			"there is no wall shear stress in it")
+	}
+	for _, step := range []func(source, *field.Raw, Options) error{toMetres, weld, flip} {
+		if err := step(src, &raw, opt); err != nil {
+			return field.Raw{}, err
+		}
+	}
+	return raw, nil
+}
+
+// Load reads the file and builds the field: Prepare and field.Build.
+func Load(name string, data []byte, opt Options) (*field.Field, error) {
+	raw, err := Prepare(name, data, opt)
+	if err != nil {
+		return nil, err
+	}
+	f, err := field.Build(raw)
+	var se *SyntaxError
+	if err != nil && !errors.As(err, &se) {
+		err = source{name}.fail("", "check the export", "%v", err)
+	}
+	return f, err
+}
+
+// shortName returns the file's name without folder and endings.
+func shortName(name string) string {
+	name = path.Base(strings.ReplaceAll(name, `\`, "/"))
+	if s := strings.TrimSuffix(name, ".gz"); s != "" {
+		name = s
+	}
+	if i := strings.LastIndexByte(name, '.'); i > 0 {
+		name = name[:i]
+	}
+	return oneLine(name)
+}
+
+// flip turns tau where the user says that the file holds the stress on the fluid.
+func flip(_ source, raw *field.Raw, opt Options) error {
+	if !opt.Flip {
+		return nil
+	}
+	for i, v := range raw.Tau {
+		raw.Tau[i] = r3.Vec{}.Sub(v) // not Scale(-1): zeros stay positive
+	}
+	for i, v := range raw.FaceTau {
+		raw.FaceTau[i] = r3.Vec{}.Sub(v)
+	}
+	note(raw, field.Note, "flipped-tau", 0, "", "the sign of tau was turned, as --flip asks")
+	return nil
+}
