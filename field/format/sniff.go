@@ -18,6 +18,8 @@ type kind struct {
 func kinds() []kind {
 	return []kind{
 		{"PLY", isPLY, readPLY},
+		{"GLB", starts("glTF"), readGLB},
+		{"glTF", isGLTF, readGLTF},
 	}
 }
 
@@ -65,6 +67,11 @@ func starts(signature string) func([]byte) bool {
 func isPLY(data []byte) bool {
 	return bytes.HasPrefix(data, []byte("ply\n")) || bytes.HasPrefix(data, []byte("ply\r")) ||
 		bytes.HasPrefix(data, []byte("ply "))
+}
+
+// isGLTF takes any JSON for glTF: no other kind that is read begins with a brace.
+func isGLTF(data []byte) bool {
+	return bytes.HasPrefix(bytes.TrimLeft(bytes.TrimPrefix(data, []byte("\xef\xbb\xbf")), " \t\r\n"), []byte("{"))
 }
 
 var little = binary.LittleEndian
