@@ -11,9 +11,10 @@ import (
 var (
 	positionNames = []string{"", "coordinate", "coordinates", "coord", "coords", "points", "point", "position", "pos",
 		"node", "vertex", "location", "centroid", "center", "centre", "facecentre", "facecenter", "facecentroid",
-		"cellcentre", "cellcenter", "cellcentroid", "c", "p"}
+		"cellcentre", "cellcenter", "cellcentroid", "c"}
 	tauNames = []string{"tau", "tauw", "tauwall", "walltau", "wallshearstress", "wallshear", "wss", "skinfriction",
-		"shearstress", "wallshearstressmean", "meanwallshearstress", "taumean", "tauwmean", "wallshearstressvector"}
+		"shearstress", "wallshearstressmean", "meanwallshearstress", "taumean", "tauwmean", "wallshearstressvector", "shear",
+		"t"}
 	cfNames = []string{"cf", "coefskinfriction", "skinfrictioncoefficient", "skinfrictioncoef", "skinfrictioncoeff",
 		"frictioncoefficient", "frictioncoeff", "cfmean", "meancf"}
 	normalNames = []string{"n", "normal", "normals", "facenormal", "unitnormal", "surfacenormal"}
@@ -143,7 +144,7 @@ func (c *columns) components(base string, need int) (cols [3]int, ok bool) {
 	slot := [4]int{-1, -1, -1, -1} // components 0 to 3: numbers may count from one
 	for col, l := range c.labels {
 		for _, s := range l.splits {
-			if s.base == base && slot[s.comp] < 0 && (base != "" || !s.num) {
+			if s.base == base && slot[s.comp] < 0 && (base != "" || isAxis(l.plain)) {
 				slot[s.comp] = col
 				break
 			}
@@ -160,6 +161,11 @@ func (c *columns) components(base string, need int) (cols [3]int, ok bool) {
 		}
 	}
 	return cols, true
+}
+
+// isAxis tells x, y and z, which alone name a coordinate; i, j and k are numbers of a grid.
+func isAxis(name string) bool {
+	return len(name) == 1 && strings.ContainsAny(name, "xyzXYZ")
 }
 
 // scalar returns the first column that has one of the names.

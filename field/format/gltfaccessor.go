@@ -148,6 +148,9 @@ func (a *accessor) at(i, c int) float64 {
 	return float64(math.Float32frombits(little.Uint32(b[4*c:])))
 }
 
+// plainFloats tells the usual case: single-precision numbers without replacements.
+func (a *accessor) plainFloats() bool { return a.typ == 5126 && a.data != nil && a.sparse == nil }
+
 // scaled applies the specification's rule for normalised integers.
 func (a *accessor) scaled(x, most float64) float64 {
 	if !a.normalized {

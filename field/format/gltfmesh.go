@@ -184,6 +184,18 @@ func grow[T any](s []T, n int) []T {
 
 // readVectors reads the three components: of one vector attribute, or each from its own scalar one.
 func readVectors(v []r3.Vec, a [3]accessor, vector bool) {
+	if vector && a[0].plainFloats() {
+		d, stride := a[0].data, a[0].stride
+		for i := range v {
+			e := d[i*stride : i*stride+12]
+			v[i] = r3.Vec{
+				X: float64(math.Float32frombits(little.Uint32(e))),
+				Y: float64(math.Float32frombits(little.Uint32(e[4:]))),
+				Z: float64(math.Float32frombits(little.Uint32(e[8:]))),
+			}
+		}
+		return
+	}
 	c := [3]int{}
 	if vector {
 		c = [3]int{0, 1, 2}

@@ -1,7 +1,5 @@
 package format
 
-import "fmt"
-
 // addTriangles adds the triangles of a primitive; its points begin at base.
 func (r *gltfReader) addTriangles(p placed, base, end int) error {
 	n := end - base
@@ -29,6 +27,9 @@ func (r *gltfReader) addTriangles(p placed, base, end int) error {
 	}
 	if mode == 4 && n%3 != 0 {
 		return r.fail(p.place, "export again", "%d corners make no whole number of triangles", n)
+	}
+	if mode == 4 && p.prim.Indices != nil && index.typ == 5125 && index.data != nil && index.sparse == nil && p.m.det() > 0 {
+		return r.plainTriangles(&index, p, base, end-base)
 	}
 	corner, err := r.corners(index, p, base, n, end-base)
 	if err != nil {
@@ -75,7 +76,26 @@ func (r *gltfReader) corners(a accessor, p placed, base, n, points int) ([]int32
 		out[i] = int32(base + int(x))
 	})
 	if bad >= 0 {
-		return nil, r.fail(p.place, "export again", "%s names a point beyond the %d that there are", fmt.Sprintf("index %d", bad), points)
+		return nil, r.badIndex(p, bad, points)
 	}
 	return out, nil
+}
+
+// plainTriangles is addTriangles for the usual case: triangles by 32-bit indices.
+func (r *gltfReader) plainTriangles(a *accessor, p placed, base, points int) error {
+	first := len(r.raw.Tris)
+	r.raw.Tris = grow(r.raw.Tris, a.count/3)
+	out := r.raw.Tris[first:]
+	for i := range a.count {
+		v := little.Uint32(a.data[i*a.stride:])
+		if int64(v) >= int64(points) {
+			return r.badIndex(p, i, points)
+		}
+		out[i/3][i%3] = int32(base + int(v))
+	}
+	return nil
+}
+
+func (r *gltfReader) badIndex(p placed, i, points int) error {
+	return r.fail(p.place, "export again", "index %d names a point beyond the %d that there are", i, points)
 }

@@ -12,37 +12,56 @@ import (
 // Read reads the file in its own unit and as its own connectivity has it. The kind is told from the content; a gzipped
 // file is unpacked. Values without triangles are matched to opt.Surface. The error is a *SyntaxError.
 func Read(name string, data []byte, opt Options) (field.Raw, error) {
+	raw, _, err := readRun(name, data, opt)
+	return raw, err
+}
+
+// readRun also returns what the file and its surface say about the flow.
+func readRun(name string, data []byte, opt Options) (field.Raw, hints, error) {
 	data, err := unpack(name, data)
 	if err != nil {
-		return field.Raw{}, err
+		return field.Raw{}, hints{}, err
 	}
 	raw, err := read(name, data, opt)
 	if err != nil {
-		return field.Raw{}, err
+		return field.Raw{}, hints{}, err
+	}
+	h := hintsOf(data)
+	if opt.Surface != nil {
+		if h, err = attach(source{name}, &raw, h, opt); err != nil {
+			return field.Raw{}, hints{}, err
+		}
 	}
 	if raw.Name == "" {
 		raw.Name = shortName(name)
 	}
-	return raw, nil
+	return raw, h, nil
 }
 
-// Prepare reads the file and does all that comes before repair: units, mirroring, welding, sign. Its result can be built
+// Prepare reads the file and does all that comes before repair: mirroring, units, welding, sign. Its result can be built
 // or, without loss at sharp edges, written.
 func Prepare(name string, data []byte, opt Options) (field.Raw, error) {
-	raw, err := Read(name, data, opt)
+	raw, h, err := readRun(name, data, opt)
 	if err != nil {
 		return field.Raw{}, err
 	}
 	src := source{name}
-	if raw.Tau == nil && raw.FaceTau == nil {
+	switch {
+	case raw.Tau == nil && raw.FaceTau == nil:
 		return field.Raw{}, src.fail("", "name the column or array with --tau, or use the file as --surface",
 			"there is no wall shear stress in it")
+	case len(raw.Tris) == 0:
+		return field.Raw{}, src.fail("", "give the geometry with --surface", "there are no triangles in it")
 	}
-	for _, step := range []func(source, *field.Raw, Options) error{toMetres, weld, flip} {
+	if opt.Surface != nil {
+		opt.Unit = "" // the positions are the surface's, whose unit attach has told
+	}
+	for _, step := range []func(source, *field.Raw, Options) error{mirror, toMetres, weld, flip, normalContent} {
 		if err := step(src, &raw, opt); err != nil {
 			return field.Raw{}, err
 		}
 	}
+	tellSign(&raw, h.stream)
 	return raw, nil
 }
 

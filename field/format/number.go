@@ -118,3 +118,70 @@ func missing(s []byte) (float64, bool) {
 	}
 	return 0, false
 }
+
+// scanNumber reads the plain decimal number at offset at, for the cells that nearly all tables have; ok is false for all
+// others, which parseNumber then reads. The result is exact by one rounding, as parseNumber's.
+func scanNumber(data []byte, at int, point byte) (x float64, next int, ok bool) {
+	i := at
+	neg := false
+	if i < len(data) && data[i] == '-' {
+		neg = true
+		i++
+	}
+	var mantissa uint64
+	from := i
+	for i < len(data) && data[i]-'0' < 10 {
+		mantissa = mantissa*10 + uint64(data[i]-'0')
+		i++
+	}
+	digits := i - from
+	scale := 0
+	if i < len(data) && data[i] == point {
+		i++
+		from = i
+		for i < len(data) && data[i]-'0' < 10 {
+			mantissa = mantissa*10 + uint64(data[i]-'0')
+			i++
+		}
+		scale = i - from
+		digits += scale
+	}
+	const mostDigits = 18 // below 2^63
+	if digits == 0 || digits > mostDigits {
+		return 0, at, false
+	}
+	scale = -scale
+	if i < len(data) && data[i]|0x20 == 'e' {
+		i++
+		eneg := false
+		if i < len(data) && (data[i] == '-' || data[i] == '+') {
+			eneg = data[i] == '-'
+			i++
+		}
+		e, from := 0, i
+		for i < len(data) && data[i]-'0' < 10 && i-from < 4 {
+			e = e*10 + int(data[i]-'0')
+			i++
+		}
+		if i == from {
+			return 0, at, false
+		}
+		if eneg {
+			e = -e
+		}
+		scale += e
+	}
+	if mantissa >= 1<<53 || scale < -22 || scale > 22 {
+		return 0, at, false
+	}
+	x = float64(mantissa)
+	if scale < 0 {
+		x /= exactPowers[-scale]
+	} else {
+		x *= exactPowers[scale]
+	}
+	if neg {
+		x = -x
+	}
+	return x, i, true
+}

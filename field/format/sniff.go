@@ -20,6 +20,11 @@ func kinds() []kind {
 		{"PLY", isPLY, readPLY},
 		{"GLB", starts("glTF"), readGLB},
 		{"glTF", isGLTF, readGLTF},
+		{"STL", isBinarySTL, readBinarySTL},
+		{"STL", isTextSTL, readTextSTL},
+		{"STL", looksCutSTL, readBinarySTL},
+		{"OBJ", isOBJ, readOBJ},
+		{"table", func([]byte) bool { return true }, readTable},
 	}
 }
 
@@ -52,12 +57,12 @@ func read(name string, data []byte, opt Options) (field.Raw, error) {
 			return field.Raw{}, src.fail("", r.remedy, "%s", r.what)
 		}
 	}
-	for _, k := range kinds() {
-		if k.is(data) {
-			return k.read(name, data, opt)
-		}
+	all := kinds()
+	k := 0
+	for !all[k].is(data) {
+		k++ // the last takes everything
 	}
-	return field.Raw{}, src.fail("", "PLY, glTF, STL, OBJ, CGNS and tables can be read", "the kind of file is not known")
+	return all[k].read(name, data, opt)
 }
 
 func starts(signature string) func([]byte) bool {

@@ -1,0 +1,163 @@
+package format
+
+import (
+	"shearprint/field"
+	"shearprint/field/r3"
+)
+
+// connect gives values without triangles their surface: opt.Surface if there is one, else the grid that the table's own
+// numbers i and j or the order of its rows tell, else, for nearly planar points, the Delaunay triangles.
+func (t *tableReader) connect(opt Options) (field.Raw, error) {
+	raw := &t.raw
+	t.dropPlaceless()
+	switch {
+	case opt.Surface != nil:
+		return *raw, nil // attach does it, as for every kind of file
+	case t.grid[0] != nil:
+		return *raw, t.connectIndices()
+	}
+	if n := rowLength(raw.Points); n > 0 {
+		rows := len(raw.Points) / n
+		note(raw, field.Note, "structured", n*rows, "", "the rows form a grid of %d by %d points; its cells are the faces", n, rows)
+		addCells(raw, n, rows, func(i, j int) int32 { return int32(j*n + i) })
+		return *raw, nil
+	}
+	return *raw, triangulate(t.source, raw)
+}
+
+// dropPlaceless drops rows without a finite position: empty lines of spreadsheets, mostly.
+func (t *tableReader) dropPlaceless() {
+	raw := &t.raw
+	n := 0
+	first := -1
+	for i, p := range raw.Points {
+		if !p.Finite() {
+			if first < 0 {
+				first = i
+			}
+			continue
+		}
+		raw.Points[n] = p
+		moveRow(raw, n, i)
+		for _, g := range t.grid {
+			if g != nil {
+				g[n] = g[i]
+			}
+		}
+		n++
+	}
+	if first < 0 {
+		return
+	}
+	note(raw, field.Doubtful, "rows-without-place", len(raw.Points)-n, "", "%d rows have no position and were left out; the first is row %d",
+		len(raw.Points)-n, first+1)
+	t.cut(n)
+}
+
+// moveRow copies the values of row i to row n.
+func moveRow(raw *field.Raw, n, i int) {
+	if raw.Tau != nil {
+		raw.Tau[n] = raw.Tau[i]
+	}
+	if raw.P != nil {
+		raw.P[n] = raw.P[i]
+	}
+	if raw.Cp != nil {
+		raw.Cp[n] = raw.Cp[i]
+	}
+}
+
+// addCells makes the quadrilaterals of a grid of n by rows points, two triangles each.
+func addCells(raw *field.Raw, n, rows int, at func(i, j int) int32) {
+	raw.Tris = make([][3]int32, 0, 2*(n-1)*(rows-1))
+	raw.Face = make([]int32, 0, cap(raw.Tris))
+	cell := 0
+	for j := range rows - 1 {
+		for i := range n - 1 {
+			q := [4]int32{at(i, j), at(i+1, j), at(i+1, j+1), at(i, j+1)}
+			if q[0] >= 0 && q[1] >= 0 && q[2] >= 0 && q[3] >= 0 {
+				raw.Tris = append(raw.Tris, [3]int32{q[0], q[1], q[2]}, [3]int32{q[0], q[2], q[3]})
+				raw.Face = append(raw.Face, int32(cell), int32(cell))
+				cell++
+			}
+		}
+	}
+}
+
+// connectIndices makes the cells of a grid whose rows carry their numbers i and j, in any order; cells that lack a
+// corner are holes.
+func (t *tableReader) connectIndices() error {
+	raw := &t.raw
+	lo, hi := [2]float64{}, [2]float64{}
+	for k, g := range t.grid {
+		lo[k], hi[k] = g[0], g[0]
+		for row, x := range g {
+			if x != float64(int64(x)) {
+				return t.fail("header", "rename the columns if they are something else",
+					"columns i and j are to number a grid, but row %d has %g", row+1, x)
+			}
+			lo[k], hi[k] = min(lo[k], x), max(hi[k], x)
+		}
+	}
+	n, rows := hi[0]-lo[0]+1, hi[1]-lo[1]+1
+	// A grid that is mostly empty would take memory that no row of the file accounts for.
+	const sparsest = 4
+	if n < 2 || rows < 2 || float64(n*rows) > float64(sparsest*float64(len(raw.Points)))+1000 {
+		return t.fail("header", "rename the columns if they are something else",
+			"columns i and j would make a grid of %.0f by %.0f points of %d rows", n, rows, len(raw.Points))
+	}
+	number := make([]int32, int(n*rows))
+	for k := range number {
+		number[k] = -1
+	}
+	twice := 0
+	for row := range raw.Points {
+		k := int(t.grid[0][row]-lo[0]) + int(n)*int(t.grid[1][row]-lo[1])
+		if number[k] >= 0 {
+			twice++
+		}
+		number[k] = int32(row)
+	}
+	if twice > 0 {
+		return t.fail("header", "export one zone a file", "%d rows repeat the numbers i and j of others", twice)
+	}
+	w := int(n)
+	addCells(raw, w, int(rows), func(i, j int) int32 { return number[j*w+i] })
+	if len(raw.Tris) == 0 {
+		return t.fail("header", "give the geometry with --surface", "the grid of i and j has no whole cell")
+	}
+	note(raw, field.Note, "structured", len(raw.Points), "", "columns i and j make a grid of %d by %d points; its cells are the faces",
+		w, int(rows))
+	return nil
+}
+
+// jumpRatio is how much longer than its neighbours a step must be to be the way back to the start of a row.
+const jumpRatio = 2
+
+// rowLength finds the length of the rows of a structured grid whose points come row after row: at the end of each row,
+// and nowhere else, the step to the next point is a jump. It returns 0 where the points are not such a grid.
+func rowLength(points []r3.Vec) int {
+	total := len(points)
+	step := func(i int) float64 { return points[i+1].Sub(points[i]).Norm() }
+	jump := func(i int) bool {
+		d := step(i)
+		return d > float64(jumpRatio*step(i-1)) && (i+2 >= total || d > float64(jumpRatio*step(i+1)))
+	}
+	n := 0
+	for i := 1; i+1 < total; i++ {
+		if jump(i) {
+			n = i + 1
+			break
+		}
+	}
+	const shortest = 3
+	if n < shortest || total%n != 0 || total/n < 2 {
+		return 0
+	}
+	for i := 1; i+1 < total; i++ {
+		if jump(i) != ((i+1)%n == 0) {
+			return 0
+		}
+	}
+	return n
+}

@@ -1,0 +1,197 @@
+package format
+
+import (
+	"bytes"
+	"fmt"
+	"strings"
+)
+
+// dialect is how a table is written: what separates its cells, the decimal mark, its header.
+type dialect struct {
+	sep    byte // ',', ';', tab, or ' ' for any run of blanks
+	point  byte // decimal mark
+	header []string
+	body   int // offset of the first row
+	line   int // its line number, from 1
+}
+
+func (d *dialect) String() string {
+	sep := map[byte]string{',': "commas", ';': "semicolons", '\t': "tabs", ' ': "blanks"}[d.sep]
+	if d.point == ',' {
+		return sep + " and decimal commas"
+	}
+	return sep
+}
+
+// maxPreamble bounds the lines before the first row of numbers; exports have up to some dozens.
+const maxPreamble = 1000
+
+// maxLine bounds a line: maxColumns cells of numbers.
+const maxLine = 1 << 20
+
+// tellDialect finds the first row of numbers and the header before it: the last line above it that has words, whether or
+// not it begins with a comment mark.
+func tellDialect(src source, data []byte) (dialect, error) {
+	header, headerLine := "", 0
+	at, line := 0, 1
+	for ; line <= maxPreamble && at < len(data); line++ {
+		text, next := cutLine(data, at)
+		if len(text) > maxLine {
+			return dialect{}, src.fail(fmt.Sprintf("line %d", line), "export the table with line ends", "a line of more than %d bytes", maxLine)
+		}
+		trimmed := strings.TrimSpace(string(text))
+		switch {
+		case trimmed == "":
+		case isComment(trimmed):
+			if h := strings.TrimSpace(strings.TrimLeft(trimmed, "#%/! ")); len(h) > 0 {
+				header, headerLine = h, line
+			}
+		default:
+			if d, ok := rowDialect(trimmed, header); ok {
+				if header == "" {
+					return d, src.fail(fmt.Sprintf("line %d", line), "add a line such as: x y z tau_x tau_y tau_z p",
+						"the table has numbers and no header that names its columns")
+				}
+				d.header = splitHeader(header, d.sep)
+				d.body, d.line = at, line
+				return d, checkHeader(src, d, trimmed, headerLine)
+			}
+			header, headerLine = trimmed, line
+		}
+		at = next
+	}
+	return dialect{}, src.fail("", "PLY, glTF, STL, OBJ, CGNS and tables can be read",
+		"the kind of file is not known: there is no row of numbers in its first lines")
+}
+
+func checkHeader(src source, d dialect, row string, line int) error {
+	cells := len(splitCells(row, d.sep))
+	if len(d.header) != cells {
+		return src.fail(fmt.Sprintf("line %d", line), "give every column a name, in quotes where it has blanks",
+			"the header names %d columns, the first row has %d", len(d.header), cells)
+	}
+	if len(d.header) > maxColumns {
+		return src.fail(fmt.Sprintf("line %d", line), "export fewer", "the table has more than %d columns", maxColumns)
+	}
+	return nil
+}
+
+func isComment(s string) bool {
+	return s[0] == '#' || s[0] == '%' || s[0] == '!' || strings.HasPrefix(s, "//")
+}
+
+// cutLine returns the line at offset at and where the next one begins. Lines end with LF, CR LF or CR.
+func cutLine(data []byte, at int) (line []byte, next int) {
+	end := bytes.IndexAny(data[at:], "\r\n")
+	if end < 0 {
+		return data[at:], len(data)
+	}
+	next = at + end + 1
+	if data[at+end] == '\r' && next < len(data) && data[next] == '\n' {
+		next++
+	}
+	return data[at : at+end], next
+}
+
+// rowDialect tells how a row of numbers is separated; ok is false if the line is no such row. Three numbers make a row.
+func rowDialect(row, header string) (dialect, bool) {
+	try := []dialect{{sep: ';', point: '.'}, {sep: ';', point: ','}, {sep: '\t', point: '.'}, {sep: '\t', point: ','}}
+	// "0,5 1,5 2,5" reads as four cells with commas, as three with blanks: the header decides.
+	if len(splitHeader(header, ' ')) == len(strings.Fields(row)) && !strings.Contains(header, ",") {
+		try = append(try, dialect{sep: ' ', point: '.'}, dialect{sep: ' ', point: ','})
+	}
+	try = append(try, dialect{sep: ',', point: '.'}, dialect{sep: ' ', point: '.'})
+	for _, d := range try {
+		cells := splitCells(row, d.sep)
+		if len(cells) < 3 || len(cells) > maxColumns {
+			continue
+		}
+		numbers := 0
+		for _, c := range cells {
+			if x, ok := parseNumber([]byte(c), d.point); ok && x == x {
+				numbers++
+			} else if !ok && !quoted(c) && !isWord(c) {
+				numbers = -len(cells)
+			}
+		}
+		if numbers >= 3 && 2*numbers > len(cells) {
+			return d, true
+		}
+	}
+	return dialect{}, false
+}
+
+func quoted(s string) bool { return strings.HasPrefix(s, `"`) }
+
+// isWord accepts cells such as zone names beside numbers.
+func isWord(s string) bool {
+	c := s[0] | 0x20
+	return c >= 'a' && c <= 'z'
+}
+
+// splitCells cuts a row; a quoted cell keeps its separators.
+func splitCells(row string, sep byte) []string {
+	var cells []string
+	at := 0
+	for {
+		if sep == ' ' {
+			for at < len(row) && (row[at] == ' ' || row[at] == '\t') {
+				at++
+			}
+			if at == len(row) {
+				return cells
+			}
+		}
+		end := cellEnd(row, at, sep)
+		cells = append(cells, unquote(strings.TrimSpace(row[at:end])))
+		if end >= len(row) {
+			break
+		}
+		at = end + 1
+		if at == len(row) {
+			break // a separator at the end of the line closes it
+		}
+	}
+	return cells
+}
+
+func cellEnd(row string, at int, sep byte) int {
+	inside := false
+	for ; at < len(row); at++ {
+		c := row[at]
+		if c == '"' {
+			inside = !inside
+		}
+		if !inside && (c == sep || sep == ' ' && c == '\t') {
+			return at
+		}
+	}
+	return at
+}
+
+func unquote(s string) string {
+	if len(s) >= 2 && s[0] == '"' && s[len(s)-1] == '"' {
+		return strings.TrimSpace(strings.ReplaceAll(s[1:len(s)-1], `""`, `"`))
+	}
+	return s
+}
+
+// splitHeader cuts a header line. Between blanks, "x [m]" is one name: a bracket belongs to the word before it.
+func splitHeader(header string, sep byte) []string {
+	cells := splitCells(header, sep)
+	if sep != ' ' {
+		return cells
+	}
+	var out []string
+	open := false
+	for _, c := range cells {
+		if len(out) > 0 && (open || strings.HasPrefix(c, "[") || strings.HasPrefix(c, "(")) {
+			out[len(out)-1] += " " + c
+		} else {
+			out = append(out, c)
+		}
+		last := out[len(out)-1]
+		open = strings.Count(last, "[")+strings.Count(last, "(") > strings.Count(last, "]")+strings.Count(last, ")")
+	}
+	return out
+}
