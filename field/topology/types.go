@@ -28,8 +28,8 @@ type Skeleton struct {
 	Ledger Ledger
 	// Floor is the robustness [unit of tau] below which points were cancelled; 0 if none were.
 	Floor float64
-	// Cancelled lists the points below Floor, weakest last, without ids.
-	Cancelled []Point
+	// Cancelled is the number of points below Floor.
+	Cancelled int
 	// Basins holds, per triangle, the number of its basin; nil without lines.
 	Basins []int32
 	// Findings tells what is doubtful about points and lines.

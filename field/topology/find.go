@@ -1,0 +1,141 @@
+package topology
+
+import (
+	"cmp"
+	"context"
+	"fmt"
+	"math"
+	"slices"
+	"sync"
+
+	"shearprint/field"
+	"shearprint/field/r3"
+)
+
+// pointBlock is the number of points that one goroutine places at a time.
+const pointBlock = 64
+
+// Find returns the critical points of f with their ledger, and the lines if asked for. The only error is that of ctx: any
+// field on any mesh has an answer.
+func Find(ctx context.Context, f *field.Field, opt Options) (*Skeleton, error) {
+	progress := opt.Progress
+	if progress == nil {
+		progress = func(float64) {}
+	}
+	c, err := readIndices(ctx, f)
+	if err != nil {
+		return nil, err
+	}
+	progress(0.1)
+	if err := c.findRobustness(ctx); err != nil {
+		return nil, err
+	}
+	progress(0.3)
+	s := &Skeleton{Field: f, Floor: opt.MinRobustness}
+	if opt.Relative {
+		s.Floor = float64(opt.MinRobustness * f.MaxTau)
+	}
+	kept := c.seeds[:0:0]
+	for _, seed := range c.seeds {
+		if c.level(seed.robust) >= s.Floor {
+			kept = append(kept, seed)
+		}
+	}
+	s.Cancelled = len(c.seeds) - len(kept)
+	if s.Points, err = c.placeAll(ctx, kept); err != nil {
+		return nil, err
+	}
+	s.order()
+	s.tellClose()
+	s.makeLedger(c)
+	s.tellDoubts()
+	progress(1)
+	return s, nil
+}
+
+// placeAll finds place and kind of the seeds.
+func (c *count) placeAll(ctx context.Context, seeds []seed) ([]Point, error) {
+	points := make([]Point, len(seeds))
+	z := normals()
+	pool := sync.Pool{New: func() any { return c.placer(z) }} // a placer holds arrays of the mesh's size
+	err := inBlocks(ctx, len(seeds), pointBlock, func(from, to int) {
+		p := pool.Get().(*placer)
+		for i := from; i < to; i++ {
+			points[i] = p.place(&seeds[i])
+		}
+		pool.Put(p)
+	})
+	return points, err
+}
+
+// order sorts the points by type, then by falling robustness, the points that nothing cancels first, then by falling
+// slope of tau, then by place, and names them.
+func (s *Skeleton) order() {
+	slices.SortFunc(s.Points, func(a, b Point) int {
+		return cmp.Or(
+			cmp.Compare(a.Type, b.Type), cmp.Compare(b.Robustness, a.Robustness),
+			cmp.Compare(norm(b.Jacobian), norm(a.Jacobian)), compareVec(a.Position, b.Position),
+			cmp.Compare(a.Patch[0], b.Patch[0]))
+	})
+	letters := [...]string{Node: "N", Focus: "F", Saddle: "S", Degenerate: "D"}
+	var number [len(letters)]int
+	for i := range s.Points {
+		p := &s.Points[i]
+		number[p.Type]++
+		p.ID = fmt.Sprint(letters[p.Type], number[p.Type])
+	}
+}
+
+func compareVec(a, b r3.Vec) int {
+	return cmp.Or(cmp.Compare(a.X, b.X), cmp.Compare(a.Y, b.Y), cmp.Compare(a.Z, b.Z))
+}
+
+// closeEdges is the distance in mean edges below which two points cannot be told from one: the fit of each would use the
+// other's vertices.
+const closeEdges = 3
+
+// tellClose marks the points that have another within closeEdges along the surface.
+func (s *Skeleton) tellClose() {
+	owner := map[int32]int{} // number of the point by triangle; for looking up only
+	for i, p := range s.Points {
+		owner[p.Loc.Tri] = i
+	}
+	a := newAround(s.Field)
+	for i := range s.Points {
+		p := &s.Points[i]
+		a.gather(p.Loc.Tri, closeEdges)
+		for _, t := range a.faces {
+			k, ok := owner[t]
+			if !ok || k == i {
+				continue
+			}
+			q := &s.Points[k]
+			if q.Position.Sub(p.Position).Norm() < float64(closeEdges*math.Max(p.Size, q.Size)) {
+				for _, x := range [2]*Point{p, q} {
+					x.Resolved = false
+					addNote(x, noteClose)
+				}
+			}
+		}
+	}
+}
+
+// tellDoubts adds findings on the points that the mesh does not resolve.
+func (s *Skeleton) tellDoubts() {
+	count, where := 0, ""
+	for _, p := range s.Points {
+		if !p.Resolved {
+			if count == 0 {
+				where = p.ID
+			}
+			count++
+		}
+	}
+	if count > 0 {
+		s.Findings = append(s.Findings, field.Finding{
+			Level: field.Doubtful, Code: "unresolved-points", Count: count, Where: where,
+			Text: fmt.Sprintf("%d of %d critical points are not resolved by this mesh; their index is right, their place and "+
+				"type are doubtful", count, len(s.Points)),
+		})
+	}
+}

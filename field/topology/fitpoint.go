@@ -1,0 +1,280 @@
+package topology
+
+import (
+	"math"
+
+	"shearprint/field"
+	"shearprint/field/r3"
+)
+
+// byFit places the point by a quadratic fit over the neighbourhood of pt.Loc. It returns why that is impossible, or "".
+func (p *placer) byFit(s *seed, pt *Point) string {
+	f := p.c.f
+	var q quadratic
+	var b base
+	ok := false
+	for rings := int32(fitRings); rings <= mostRings && !ok; rings++ {
+		p.gather(pt.Loc.Tri, rings)
+		clean := p.clean()
+		if len(clean) < fewSamples {
+			continue
+		}
+		b = p.baseAt(s, pt.Loc)
+		samples, weight := p.samples(s, &b, clean)
+		if b.tau == 0 {
+			return noteNoSlope
+		}
+		q, ok = fit(samples, weight)
+	}
+	if !ok {
+		if p.crease {
+			return noteCrease
+		}
+		return noteFew
+	}
+	reach := pt.Size / b.length // the start is in the triangle; the zero may be an edge outside it
+	zero, found := q.zero(r3.Vec2{}, 2*reach)
+	special := len(s.zeros) > 1 || s.index != 1 && s.index != -1
+	if special {
+		zero, found = r3.Vec2{}, true // the patch's own place
+	}
+	if !found {
+		return noteFar
+	}
+	spot := b.lift(zero, at(&q.z, zero))
+	if f.Corner(pt.Loc.Tri).At(f.Corner(pt.Loc.Tri).Nearest(spot)).Sub(spot).Norm() > pt.Size {
+		return noteFar
+	}
+	j, m := q.jacobian(zero), q.errors(zero)
+	lim := bordersOf(j, q.noise, m)
+	kind, agrees := typeOf(j, s.index, lim)
+	if !agrees && !special {
+		return noteIndex
+	}
+	pt.setJacobian(j, b.tau, b.length, b.n, b.axes)
+	pt.Type, pt.Sense = kind, senseOf(j, lim)
+	if kind == Degenerate {
+		pt.Sense = Neutral
+	}
+	pt.Confidence = 1
+	if !special {
+		pt.Confidence = confidence(j, q.noise, m, s.index, kind, lim, p.normals)
+		pt.Loc = p.nearest(spot)
+		if len(s.tris) == 1 && !s.half && p.flips(s, kind) {
+			pt.Resolved = false
+			addNote(pt, noteFlips)
+		}
+	}
+	return ""
+}
+
+// baseAt returns the tangent plane at loc: perpendicular to the interpolated normal, or to the triangle's where a crease
+// spoils the other; in the plane of symmetry for a half point.
+func (p *placer) baseAt(s *seed, loc field.Loc) base {
+	f := p.c.f
+	b := base{origin: f.Position(loc), n: f.Normal(loc)}
+	for _, v := range f.Tris[loc.Tri] {
+		if p.creased[v] == p.stamp {
+			b.n = f.Corner(loc.Tri).Normal().Unit()
+		}
+	}
+	if b.n == (r3.Vec{}) {
+		b.n = f.Corner(loc.Tri).Normal().Unit()
+	}
+	if s.half {
+		b.origin = b.origin.AddScaled(-b.origin.Sub(s.mirror.origin).Dot(s.mirror.normal), s.mirror.normal)
+		b.n = b.n.Reject(s.mirror.normal).Unit()
+	}
+	b.axes = tangentFrame(b.n)
+	return b
+}
+
+// samples returns the vertices in the base's coordinates (x, y, tau's components, height), with their mirror images for
+// a half point, and sets the base's units. The weight is the share of rows that are independent.
+func (p *placer) samples(s *seed, b *base, vertices []int32) (rows [][5]float64, weight float64) {
+	f := p.c.f
+	weight = 1
+	add := func(d, tau r3.Vec) {
+		rows = append(rows, [5]float64{d.Dot(b.axes[0]), d.Dot(b.axes[1]), tau.Dot(b.axes[0]), tau.Dot(b.axes[1]), d.Dot(b.n)})
+	}
+	for _, v := range vertices {
+		d := f.Points[v].Sub(b.origin)
+		tau := f.Tau3[v].RotateBetween(f.Normals[v], b.n)
+		if !s.half {
+			add(d, tau)
+			continue
+		}
+		weight = 0.5
+		m := s.mirror.normal
+		if math.Abs(d.Dot(m)) < float64(stretchPlanar*f.EdgeLength(3*s.tris[0])) || p.onStretch(s, v) {
+			add(d.Reject(m), tau.Reject(m))
+			continue
+		}
+		add(d, tau)
+		add(d.AddScaled(-2*d.Dot(m), m), tau.AddScaled(-2*tau.Dot(m), m))
+	}
+	for _, r := range rows {
+		b.length = math.Max(b.length, r3.Hypot(r[0], r[1]))
+		b.tau = math.Max(b.tau, r3.Hypot(r[2], r[3]))
+	}
+	if b.length == 0 || b.tau == 0 {
+		b.tau = 0
+		return rows, weight
+	}
+	for i := range rows {
+		r := &rows[i]
+		r[0], r[1], r[4] = r[0]/b.length, r[1]/b.length, r[4]/b.length
+		r[2], r[3] = r[2]/b.tau, r[3]/b.tau
+	}
+	return rows, weight
+}
+
+// onStretch tells whether rim vertex v lies in the seed's plane of symmetry.
+func (p *placer) onStretch(s *seed, v int32) bool {
+	f := p.c.f
+	if !f.OnRim(v) {
+		return false
+	}
+	d := math.Abs(f.Points[v].Sub(s.mirror.origin).Dot(s.mirror.normal))
+	return d <= float64(stretchPlanar*f.EdgeLength(f.Out[v]))
+}
+
+// lift returns the place with coordinates x and height z over the base.
+func (b *base) lift(x r3.Vec2, z float64) r3.Vec {
+	return b.origin.AddScaled(float64(x.X*b.length), b.axes[0]).AddScaled(float64(x.Y*b.length), b.axes[1]).
+		AddScaled(float64(z*b.length), b.n)
+}
+
+// nearest returns the place in the gathered patch that is nearest to spot; the triangle gathered first wins a tie.
+func (p *placer) nearest(spot r3.Vec) field.Loc {
+	f := p.c.f
+	best, least := field.Loc{Tri: p.faces[0]}, math.Inf(1)
+	for _, t := range p.faces {
+		c := f.Corner(t)
+		bary := c.Nearest(spot)
+		if d := c.At(bary).Sub(spot).Norm(); d < least {
+			best, least = field.Loc{Tri: t, Bary: bary}, d
+		}
+	}
+	return best
+}
+
+// setJacobian stores Jacobian j, given in units of tau over length, in the frame of the axes.
+func (pt *Point) setJacobian(j [2][2]float64, tau, length float64, n r3.Vec, axes [2]r3.Vec) {
+	unit := finite(tau / length)
+	for i := range 2 {
+		for k := range 2 {
+			pt.Jacobian[i][k] = finite(float64(j[i][k] * unit))
+		}
+	}
+	for i, e := range eigenvalues(j) {
+		pt.Eigenvalues[i] = [2]float64{finite(float64(e[0] * unit)), finite(float64(e[1] * unit))}
+	}
+	pt.Trace = finite(float64((j[0][0] + j[1][1]) * unit))
+	pt.Determinant = finite(float64(float64(det(j)*unit) * unit))
+	pt.Normal, pt.Frame = n, axes
+}
+
+// finite keeps numbers within the range that results can hold: data of any size must not give infinities.
+func finite(x float64) float64 {
+	switch {
+	case x != x:
+		return 0
+	case x > math.MaxFloat64:
+		return math.MaxFloat64
+	case x < -math.MaxFloat64:
+		return -math.MaxFloat64
+	}
+	return x
+}
+
+// flipMargin is the share of the norm by which the triangle's own Jacobian must be a focus or a node to speak against
+// the fit: one triangle's slopes are off by about the field's curvature times the edge, which is a few per cent.
+const flipMargin = 0.1
+
+// flips tells whether the point's triangle alone gives clearly another type than the fit.
+func (p *placer) flips(s *seed, kind Type) bool {
+	_, j := p.linear(s.tris[0])
+	n := norm(j)
+	if n == 0 || s.index < 0 {
+		return false // a saddle by its index, whatever the slopes
+	}
+	for i := range 2 {
+		for k := range 2 {
+			j[i][k] /= n
+		}
+	}
+	d := discriminant(j)
+	const margin = flipMargin * flipMargin
+	return kind == Node && d < -margin || kind == Focus && d > margin
+}
+
+// byTriangle places the point by the linear field of its triangle.
+func (p *placer) byTriangle(s *seed, pt *Point) {
+	f := p.c.f
+	t := pt.Loc.Tri
+	_, j := p.linear(t)
+	ex, ey, n := f.Frame(t)
+	axes := tangentFrame(n)
+	c, d := ex.Dot(axes[0]), ey.Dot(axes[0]) // axes[0] in the flat frame
+	j = turnMatrix(j, c, d)
+	scale := norm(j)
+	if scale == 0 {
+		pt.setJacobian(j, 1, 1, n, axes)
+		pt.Type, pt.Confidence = Degenerate, 0
+		return
+	}
+	for i := range 2 {
+		for k := range 2 {
+			j[i][k] /= scale
+		}
+	}
+	lim := borders{trace: traceShare, disc: swirlShare * swirlShare}
+	kind, agrees := typeOf(j, s.index, lim)
+	pt.setJacobian(j, scale, 1, n, axes)
+	pt.Type, pt.Sense = kind, senseOf(j, lim)
+	if !agrees {
+		pt.Type, pt.Sense, pt.Confidence = Degenerate, Neutral, 0
+		addNote(pt, noteLinear)
+		return
+	}
+	if kind == Degenerate {
+		pt.Sense = Neutral
+	}
+	pt.Confidence = p.shareAround(t, s.index, kind, lim)
+}
+
+// turnMatrix returns j in the frame whose first axis is (c, d) in the old one.
+func turnMatrix(j [2][2]float64, c, d float64) [2][2]float64 {
+	q := [2][2]float64{{c, d}, {-d, c}}
+	var out [2][2]float64
+	for i := range 2 {
+		for k := range 2 {
+			for a := range 2 {
+				for b := range 2 {
+					out[i][k] += float64(float64(q[i][a]*j[a][b]) * q[k][b])
+				}
+			}
+		}
+	}
+	return out
+}
+
+// shareAround returns the share of triangle t and its neighbours whose own Jacobians give the same type: all that can be
+// said of its certainty without a fit.
+func (p *placer) shareAround(t int32, index int, want Type, lim borders) float64 {
+	kept, all := 0, 0
+	p.gather(t, 1)
+	for _, g := range p.faces {
+		_, j := p.linear(g)
+		n := norm(j)
+		if n == 0 {
+			continue
+		}
+		all++
+		if got, ok := typeOf(j, index, borders{lim.trace * n, lim.disc * n * n}); ok && got == want {
+			kept++
+		}
+	}
+	return float64(kept) / math.Max(1, float64(all))
+}
