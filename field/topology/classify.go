@@ -12,11 +12,12 @@ const (
 	// turn of the spiral changes its radius by a factor of e^(2 pi 30): no reading of a surface could tell it from a node,
 	// and star nodes must not become foci by the errors of a fit.
 	swirlShare = 1. / 30
-	// traceShare is the trace, as a share of the norm, below which a point has no sense and a focus is a centre: its
-	// spirals then change by 0.3 per cent in a turn, less than any computation of a flow is good for.
+	// traceShare is the trace, as a share of the norm, below which a point has no sense: the spirals of a focus then change
+	// by 0.3 per cent in a turn, less than any computation of a flow is good for.
 	traceShare = 1e-3
-	// sureness is the number of standard errors that a number must differ from zero by to have a sign.
-	sureness = 3
+	// centreShare is the trace, as a share of the norm, above which a focus is no centre even where the error of the trace
+	// is larger still: it then is a focus whose sense is unknown. Below, spirals change by less than a tenth in a turn.
+	centreShare = 0.02
 	// confidenceSamples of the Jacobian's error distribution give the confidence to half a per cent.
 	confidenceSamples = 512
 )
@@ -31,7 +32,7 @@ func bordersOf(j, s, m [2][2]float64) borders {
 	half := (j[0][0] - j[1][1]) / 2
 	g := [2][2]float64{{half, j[1][0]}, {j[0][1], -half}}
 	return borders{
-		trace: math.Max(float64(traceShare*n), float64(sureness*spread([2][2]float64{{1, 0}, {0, 1}}, s, m))),
+		trace: math.Max(float64(traceShare*n), spread([2][2]float64{{1, 0}, {0, 1}}, s, m)),
 		disc:  math.Max(float64(float64(swirlShare*n)*float64(swirlShare*n)), spread(g, s, m)),
 	}
 }
@@ -73,7 +74,7 @@ func typeOf(j [2][2]float64, index int, b borders) (Type, bool) {
 		return Node, false
 	case discriminant(j) >= -b.disc:
 		return Node, true
-	case math.Abs(j[0][0]+j[1][1]) <= b.trace:
+	case math.Abs(j[0][0]+j[1][1]) <= math.Min(b.trace, float64(centreShare*norm(j))):
 		return Degenerate, true // a centre
 	}
 	return Focus, true
