@@ -1,0 +1,260 @@
+package study
+
+import (
+	"fmt"
+	"io"
+	"math"
+	"strings"
+
+	"shearprint/field"
+	"shearprint/field/topology"
+)
+
+// WriteText writes the reading as a surveyor's report: what there is, what separates where and how, what is doubtful.
+func (t *Topology) WriteText(w io.Writer) error {
+	s := &sheet{w: w}
+	s.title("the surface pattern of wall shear", t.Run)
+	s.line("")
+	s.para("", t.verdict())
+	t.Ledger.write(s)
+	t.writePoints(s)
+	t.writeLines(s, topology.SeparationLine, "What separates")
+	t.writeLines(s, topology.AttachmentLine, "What attaches")
+	t.writeLines(s, topology.NoKind, "Other lines of the skeleton")
+	t.writeDoubts(s)
+	return s.err
+}
+
+func (t *Topology) verdict() string {
+	words := t.Ledger.verdict()
+	if t.CancelledPoints > 0 {
+		words += fmt.Sprintf(" %s weaker than %s cancelled in balanced groups.",
+			count(t.CancelledPoints, "point", "points"), with(t.Floor, t.Run.TauUnit))
+	}
+	return words
+}
+
+func (c *Count) verdict() string {
+	things := []string{count(c.Nodes, "node", "nodes"), count(c.Foci, "focus", "foci"), count(c.Saddles, "saddle", "saddles")}
+	for _, x := range []struct {
+		n         int
+		one, many string
+	}{
+		{c.HalfNodes, "half node", "half nodes"}, {c.HalfSaddles, "half saddle", "half saddles"},
+		{c.Degenerate, "degenerate point", "degenerate points"},
+		{c.HalfDegenerate, "degenerate half point", "degenerate half points"},
+	} {
+		if x.n > 0 {
+			things = append(things, count(x.n, x.one, x.many))
+		}
+	}
+	verdict := "The ledger balances"
+	if !c.Balanced {
+		verdict = "THE LEDGER DOES NOT BALANCE"
+	}
+	last := len(things) - 1
+	return fmt.Sprintf("%s: %s and %s. The indices sum to %s, the surface demands %s.", verdict,
+		strings.Join(things[:last], ", "), things[last], num(c.IndexSum), num(c.Expected))
+}
+
+// signed prints a number with its sign, zero without.
+func signed(x float64) string {
+	if x == 0 {
+		return "0"
+	}
+	return fmt.Sprintf("%+g", x)
+}
+
+// write writes the account: what the points add up to, what the surface demands and why, part by part.
+func (l *Ledger) write(s *sheet) {
+	s.heading("Ledger")
+	rows := [][]string{{"", "number", "each", "sum"}}
+	for _, r := range []struct {
+		name string
+		n    int
+		each float64
+	}{
+		{"nodes", l.Nodes, 1}, {"foci", l.Foci, 1}, {"half nodes", l.HalfNodes, 0.5},
+		{"saddles", l.Saddles, -1}, {"half saddles", l.HalfSaddles, -0.5},
+	} {
+		if r.n > 0 || math.Abs(r.each) == 1 {
+			rows = append(rows, []string{r.name, fmt.Sprint(r.n), signed(r.each),
+				signed(float64(r.n) * r.each)})
+		}
+	}
+	if n := l.Degenerate + l.HalfDegenerate; n > 0 {
+		simple := float64(l.Nodes+l.Foci-l.Saddles) + float64(l.HalfNodes-l.HalfSaddles)/2
+		rows = append(rows, []string{"degenerate", fmt.Sprint(n), "", signed(float64(l.IndexSum) - simple)})
+	}
+	rows = append(rows, []string{"sum of indices", "", "", signed(float64(l.IndexSum))},
+		[]string{"demanded", "", "", signed(float64(l.Expected))})
+	s.table(rows)
+	s.para("  ", l.Rule)
+	if len(l.Parts) < 2 {
+		return
+	}
+	parts := [][]string{{"part", "nodes", "foci", "saddles", "half", "sum", "demanded", "verdict"}}
+	for _, p := range l.Parts {
+		verdict := "balances"
+		if !p.Balanced {
+			verdict = "DOES NOT BALANCE"
+		}
+		parts = append(parts, []string{fmt.Sprint(p.Part), fmt.Sprint(p.Nodes), fmt.Sprint(p.Foci), fmt.Sprint(p.Saddles),
+			fmt.Sprint(p.HalfNodes + p.HalfSaddles + p.HalfDegenerate), num(p.IndexSum), num(p.Expected), verdict})
+	}
+	s.table(limited(parts))
+}
+
+func (t *Topology) writePoints(s *sheet) {
+	s.heading("What there is")
+	if len(t.Points) == 0 {
+		s.line("  no critical points")
+		return
+	}
+	rows := [][]string{{"id", "type", "sense", "robustness" + bracket(t.Run.TauUnit), "of max |tau|", "confidence", "",
+		"position" + bracket(t.Run.LengthUnit)}}
+	marked := false
+	for _, p := range t.Points {
+		kind := p.Type.String()
+		if p.Half {
+			kind = "half " + kind
+		}
+		if p.Type == topology.Degenerate {
+			kind += fmt.Sprintf(" (%+d)", p.Index)
+		}
+		mark := ""
+		if !p.Resolved || p.Confidence < unsure && p.Type != topology.Degenerate {
+			mark, marked = "?", true
+		}
+		rows = append(rows, []string{p.ID, kind, p.Sense.String(), robustness(p.Robustness), t.share(p.Robustness),
+			fmt.Sprintf("%.2f", float64(p.Confidence)), mark, place(p.Position)})
+	}
+	s.table(rows)
+	if marked {
+		s.line("  ? see: what is doubtful")
+	}
+}
+
+func robustness(x Number) string {
+	if math.IsInf(float64(x), 1) {
+		return "all"
+	}
+	return num(x)
+}
+
+// share prints a stress as a share of the largest |tau|; nothing for an infinite one.
+func (t *Topology) share(x Number) string {
+	if math.IsInf(float64(x), 0) || t.maxTau == 0 {
+		return ""
+	}
+	return fmt.Sprintf("%.3g %%", 100*float64(x)/t.maxTau)
+}
+
+func (t *Topology) writeLines(s *sheet, kind topology.Kind, title string) {
+	first := true
+	for _, l := range t.Lines {
+		if l.Kind != kind {
+			continue
+		}
+		if first {
+			s.heading(title)
+			first = false
+		}
+		s.para(fmt.Sprintf("  %-4s ", l.ID), l.describe(t.Run))
+	}
+	if first && kind != topology.NoKind {
+		s.heading(title)
+		s.line("  no line was found")
+	}
+}
+
+// describe tells of one line in a sentence: type, ends, length, place, reason.
+func (l *Line) describe(run Run) string {
+	var b strings.Builder
+	b.WriteString(l.Type.String())
+	if l.Type == topology.Cycle {
+		if l.stable {
+			b.WriteString(", neighbours approach it")
+		} else {
+			b.WriteString(", neighbours leave it")
+		}
+	}
+	end := func(id Word) string {
+		if id == "" {
+			return "no critical point"
+		}
+		return string(id)
+	}
+	if l.From != "" || l.To != "" {
+		fmt.Fprintf(&b, ", from %s to %s", end(l.From), end(l.To))
+	}
+	fmt.Fprintf(&b, ", %s long", with(l.Length, run.LengthUnit))
+	if n := len(l.Points); n > 0 {
+		fmt.Fprintf(&b, ", %s to %s", place(l.Points[0]), place(l.Points[n-1]))
+	}
+	if lo, hi, ok := l.angles(); ok {
+		fmt.Fprintf(&b, "; the surface that leaves the wall stands at %.0f to %.0f degrees to it", lo, hi)
+	}
+	if l.Reason != "" {
+		b.WriteString(": " + strings.TrimSuffix(l.Reason, "."))
+	}
+	return b.String() + "."
+}
+
+func (l *Line) angles() (lo, hi float64, ok bool) {
+	lo, hi = math.Inf(1), math.Inf(-1)
+	for _, a := range l.Angle {
+		if x := float64(a); x == x {
+			lo, hi, ok = math.Min(lo, x), math.Max(hi, x), true
+		}
+	}
+	return lo, hi, ok
+}
+
+// unsure is the confidence below which a type is called doubtful: one chance in ten that it is another.
+const unsure = 0.9
+
+// writeDoubts lists every reason for doubt once, with the points that it concerns.
+func (t *Topology) writeDoubts(s *sheet) {
+	s.heading("What is doubtful")
+	reasons, points := t.doubtfulPoints()
+	for _, r := range reasons {
+		s.para("  - ", r+": "+strings.Join(points[r], ", "))
+	}
+	list := append(append([]field.Finding{}, t.Findings...), t.doubts...)
+	for _, f := range list {
+		words := f.Text
+		if f.Where != "" {
+			words += " (first: " + f.Where + ")"
+		}
+		s.para("  - ", words)
+	}
+	if len(reasons)+len(list) == 0 {
+		s.line("  nothing that the tool can see; it certifies nothing all the same")
+	}
+}
+
+// doubtfulPoints returns the reasons in the order in which they first appear, and per reason the points.
+func (t *Topology) doubtfulPoints() (reasons []string, points map[string][]string) {
+	points = map[string][]string{}
+	add := func(reason, point string) {
+		if points[reason] == nil {
+			reasons = append(reasons, reason)
+		}
+		points[reason] = append(points[reason], point)
+	}
+	for _, p := range t.Points {
+		if p.Confidence < unsure && p.Type != topology.Degenerate {
+			add("the type may be another (confidence in brackets)", fmt.Sprintf("%s (%.2f)", p.ID, float64(p.Confidence)))
+		}
+		for _, note := range strings.Split(p.Note, "; ") {
+			if note != "" {
+				add(note, p.ID)
+			}
+		}
+		if !p.Resolved && p.Note == "" {
+			add("not resolved by this mesh", p.ID)
+		}
+	}
+	return reasons, points
+}
