@@ -37,16 +37,18 @@ func newAround(f *field.Field) *around {
 
 const distanceSteps = 16 // above mostRings
 
-// gather collects the triangles within the given number of edges around triangle t that can be reached without crossing
-// a crease, and their vertices.
-func (a *around) gather(t int32, rings int32) {
+// gather collects the triangles within the given number of edges around the given ones that can be reached without
+// crossing a crease, and their vertices.
+func (a *around) gather(rings int32, tris ...int32) {
 	f := a.f
 	a.stamp++
-	a.measure(t, rings)
-	a.faces = append(a.faces[:0], t)
+	a.measure(tris, rings)
+	a.faces = append(a.faces[:0], tris...)
 	a.vertices = a.vertices[:0]
 	a.crease = false
-	a.seen[t] = a.stamp
+	for _, t := range tris {
+		a.seen[t] = a.stamp
+	}
 	base := a.stamp * distanceSteps
 	for i := 0; i < len(a.faces); i++ {
 		n := f.Corner(a.faces[i]).Normal().Unit()
@@ -86,13 +88,18 @@ func isCrease(n, m r3.Vec) bool {
 	return n.Dot(m) < c
 }
 
-// measure finds the vertices within the given number of edges of the corners of t.
-func (a *around) measure(t int32, rings int32) {
+// measure finds the vertices within the given number of edges of the corners of tris.
+func (a *around) measure(tris []int32, rings int32) {
 	f := a.f
 	base := a.stamp * distanceSteps
-	list := slices.Clone(f.Tris[t][:])
-	for _, v := range list {
-		a.distance[v] = base
+	var list []int32
+	for _, t := range tris {
+		for _, v := range f.Tris[t] {
+			if a.distance[v] < base {
+				a.distance[v] = base
+				list = append(list, v)
+			}
+		}
 	}
 	for i := 0; i < len(list) && len(list) < mostFaces; i++ {
 		v := list[i]

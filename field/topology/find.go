@@ -103,7 +103,7 @@ func (s *Skeleton) tellClose() {
 	a := newAround(s.Field)
 	for i := range s.Points {
 		p := &s.Points[i]
-		a.gather(p.Loc.Tri, closeEdges)
+		a.gather(closeEdges, p.Loc.Tri)
 		for _, t := range a.faces {
 			k, ok := owner[t]
 			if !ok || k == i {

@@ -13,8 +13,9 @@ func (p *placer) byFit(s *seed, pt *Point) string {
 	var q quadratic
 	var b base
 	ok := false
-	for rings := int32(fitRings); rings <= mostRings && !ok; rings++ {
-		p.gather(pt.Loc.Tri, rings)
+	tris, rings := p.core(s, pt)
+	for ; rings <= mostRings && !ok; rings++ {
+		p.gather(rings, tris...)
 		clean := p.clean()
 		if len(clean) < fewSamples {
 			continue
@@ -66,6 +67,19 @@ func (p *placer) byFit(s *seed, pt *Point) string {
 		}
 	}
 	return ""
+}
+
+// core returns the triangles around which the point is fitted, and the number of rings: two around a triangle or a small
+// patch, one around the fan of a zero vertex, so that a symmetric place has symmetric samples.
+func (p *placer) core(s *seed, pt *Point) ([]int32, int32) {
+	const small = 16 // triangles; larger patches have no linear part to be fitted
+	switch {
+	case len(s.tris) > small || len(s.zeros) > 1:
+		return []int32{pt.Loc.Tri}, fitRings
+	case len(s.zeros) == 1:
+		return s.tris, fitRings - 1
+	}
+	return s.tris, fitRings
 }
 
 // baseAt returns the tangent plane at loc: perpendicular to the interpolated normal, or to the triangle's where a crease
@@ -264,7 +278,7 @@ func turnMatrix(j [2][2]float64, c, d float64) [2][2]float64 {
 // said of its certainty without a fit.
 func (p *placer) shareAround(t int32, index int, want Type, lim borders) float64 {
 	kept, all := 0, 0
-	p.gather(t, 1)
+	p.gather(1, t)
 	for _, g := range p.faces {
 		_, j := p.linear(g)
 		n := norm(j)

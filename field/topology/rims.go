@@ -19,8 +19,8 @@ const (
 	// precision leaves 1e-7, mesh generators 1e-6.
 	stretchPlanar = 1e-4
 	// stretchAlong is the share of tau that may point across the plane of symmetry, in the mean square over the stretch.
-	// Face data averaged to vertices carry v_y dy/3 there, a few hundredths of |tau| on coarse meshes.
-	stretchAlong = 0.1
+	// Face data averaged to vertices carry v_y dy/3 there, one or two hundredths of |tau| on meshes of use.
+	stretchAlong = 0.05
 	// stretchEdges is the least number of edges of a stretch: fewer are in one plane by chance.
 	stretchEdges = 4
 )
@@ -123,14 +123,14 @@ func (s *stretch) symmetric(f *field.Field, edges []int32, nu []r3.Vec) bool {
 	if !(sum.Norm() >= float64(limit*length)) {
 		return false
 	}
-	s.normal = sum.Unit()
-	s.origin = f.Points[f.Tail(edges[s.first])]
+	vertices := make([]int32, 0, s.count+1)
+	for k := range s.count {
+		vertices = append(vertices, f.Tail(edges[(s.first+k)%n]))
+	}
+	vertices = append(vertices, f.Tip(edges[(s.first+s.count-1)%n]))
+	s.fitPlane(f, vertices, sum.Unit(), length)
 	across, all := 0.0, 0.0
-	for k := range s.count + 1 {
-		v := f.Tail(edges[(s.first+k)%n])
-		if k == s.count {
-			v = f.Tip(edges[(s.first+k-1)%n])
-		}
+	for _, v := range vertices {
 		if d := f.Points[v].Sub(s.origin).Dot(s.normal); math.Abs(d) > float64(stretchPlanar*length) {
 			return false
 		}
@@ -142,6 +142,34 @@ func (s *stretch) symmetric(f *field.Field, edges []int32, nu []r3.Vec) bool {
 		}
 	}
 	return all > 0 && across <= float64(stretchAlong*stretchAlong*all)
+}
+
+// fitPlane lays the plane through the first vertex, the one farthest from it, and the one farthest from their line.
+// Where the stretch is straight, the mean conormal nu decides.
+func (s *stretch) fitPlane(f *field.Field, vertices []int32, nu r3.Vec, length float64) {
+	s.origin = f.Points[vertices[0]]
+	farthest := func(axis r3.Vec) (r3.Vec, float64) {
+		var best r3.Vec
+		most := -1.0
+		for _, v := range vertices {
+			d := f.Points[v].Sub(s.origin)
+			if off := d.Reject(axis).Norm(); off > most {
+				best, most = d, off
+			}
+		}
+		return best, most
+	}
+	along, _ := farthest(r3.Vec{})
+	along = along.Unit()
+	const bent = 1e-2 // of the length: less does not define a plane against stretchPlanar
+	s.normal = nu.Reject(along).Unit()
+	if side, off := farthest(along); off > float64(bent*length) {
+		n := along.Cross(side).Unit()
+		if n.Dot(nu) < 0 {
+			n = n.Scale(-1)
+		}
+		s.normal = n
+	}
 }
 
 // forward returns the direction along the rim at its vertex v, halfway between the two edges there, in v's chart.
