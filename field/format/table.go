@@ -34,7 +34,7 @@ func readTable(name string, data []byte, opt Options) (field.Raw, error) {
 		}
 	}
 	applyUnits(raw, c.xUnit, c.tUnit, c.pU, c.coefficient, c.contractTau)
-	if raw.P != nil && c.pU == "" && c.name(c.p) == "p" && raw.Units.Tau == "Pa" {
+	if raw.P != nil && c.pU == "" && normal(c.name(c.p)) == "p" && raw.Units.Tau == "Pa" {
 		raw.Units.P = "Pa"
 	}
 	return t.connect(opt)
