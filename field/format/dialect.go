@@ -26,13 +26,23 @@ func (d *dialect) String() string {
 // maxPreamble bounds the lines before the first row of numbers; exports have up to some dozens.
 const maxPreamble = 1000
 
+// maxHeaderLines is how many lines above the first row are asked whether they name its columns.
+const maxHeaderLines = 8
+
 // maxLine bounds a line: maxColumns cells of numbers.
 const maxLine = 1 << 20
 
-// tellDialect finds the first row of numbers and the header before it: the last line above it that has words, whether or
-// not it begins with a comment mark.
+// headerLine is a line of words before the first row of numbers.
+type headerLine struct {
+	text    string
+	line    int
+	comment bool
+}
+
+// tellDialect finds the first row of numbers and the header before it: the last line above it that names as many columns,
+// whether or not it begins with a comment mark.
 func tellDialect(src source, data []byte) (dialect, error) {
-	header, headerLine := "", 0
+	var words []headerLine
 	at, line := 0, 1
 	for ; line <= maxPreamble && at < len(data); line++ {
 		text, next := cutLine(data, at)
@@ -43,37 +53,51 @@ func tellDialect(src source, data []byte) (dialect, error) {
 		switch {
 		case trimmed == "":
 		case isComment(trimmed):
-			if h := strings.TrimSpace(strings.TrimLeft(trimmed, "#%/! ")); len(h) > 0 {
-				header, headerLine = h, line
+			if h := strings.TrimSpace(strings.TrimLeft(trimmed, "#%/! ")); h != "" {
+				words = append(words, headerLine{h, line, true})
 			}
 		default:
-			if d, ok := rowDialect(trimmed, header); ok {
-				if header == "" {
-					return d, src.fail(fmt.Sprintf("line %d", line), "add a line such as: x y z tau_x tau_y tau_z p",
-						"the table has numbers and no header that names its columns")
-				}
-				d.header = splitHeader(header, d.sep)
+			d, ok, err := chooseHeader(src, trimmed, words, line)
+			if ok || err != nil {
 				d.body, d.line = at, line
-				return d, checkHeader(src, d, trimmed, headerLine)
+				return d, err
 			}
-			header, headerLine = trimmed, line
+			words = append(words, headerLine{trimmed, line, false})
 		}
+		words = words[max(0, len(words)-maxHeaderLines):]
 		at = next
 	}
 	return dialect{}, src.fail("", "PLY, glTF, STL, OBJ, CGNS and tables can be read",
 		"the kind of file is not known: there is no row of numbers in its first lines")
 }
 
-func checkHeader(src source, d dialect, row string, line int) error {
-	cells := len(splitCells(row, d.sep))
-	if len(d.header) != cells {
-		return src.fail(fmt.Sprintf("line %d", line), "give every column a name, in quotes where it has blanks",
-			"the header names %d columns, the first row has %d", len(d.header), cells)
+// chooseHeader tells whether the line is a row of numbers, and which of the lines of words before it names its columns.
+func chooseHeader(src source, row string, words []headerLine, line int) (d dialect, isRow bool, err error) {
+	for k := len(words) - 1; k >= 0; k-- {
+		d, ok := rowDialect(row, words[k].text)
+		if !ok {
+			continue
+		}
+		d.header = splitHeader(words[k].text, d.sep)
+		if len(d.header) == len(splitCells(row, d.sep)) {
+			return d, true, nil
+		}
 	}
-	if len(d.header) > maxColumns {
-		return src.fail(fmt.Sprintf("line %d", line), "export fewer", "the table has more than %d columns", maxColumns)
+	if d, isRow = rowDialect(row, ""); !isRow {
+		return d, false, nil
 	}
-	return nil
+	if len(words) == 0 {
+		return d, true, src.fail(fmt.Sprintf("line %d", line), "add a line such as: x y z tau_x tau_y tau_z p",
+			"the table has numbers and no header that names its columns")
+	}
+	last := words[len(words)-1]
+	for _, w := range words {
+		if !w.comment {
+			last = w
+		}
+	}
+	return d, true, src.fail(fmt.Sprintf("line %d", last.line), "give every column a name, in quotes where it has blanks",
+		"the header names %d columns, the first row has %d", len(splitHeader(last.text, d.sep)), len(splitCells(row, d.sep)))
 }
 
 func isComment(s string) bool {

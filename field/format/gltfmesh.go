@@ -259,7 +259,7 @@ func (r *gltfReader) addScalar(p placed, index int, what string, x []float64, n 
 // finish makes the run: name, units, findings.
 func (r *gltfReader) finish() (field.Raw, error) {
 	raw := &r.raw
-	if len(raw.Points) > 0 && len(raw.Tris) == 0 {
+	if len(raw.Tris) == 0 {
 		return *raw, r.fail("meshes", "export triangles", "there is not one triangle")
 	}
 	if r.skipped > 0 {
