@@ -31,7 +31,8 @@ func Find(ctx context.Context, f *field.Field, opt Options) (*Skeleton, error) {
 		return nil, err
 	}
 	progress(0.3)
-	s := &Skeleton{Field: f, Floor: opt.MinRobustness}
+	s := &Skeleton{Field: f, Floor: opt.MinRobustness, count: c}
+	c.set = sets{} // as large as the mesh, and done with
 	if opt.Relative {
 		s.Floor = float64(opt.MinRobustness * f.MaxTau)
 	}

@@ -34,6 +34,8 @@ type Skeleton struct {
 	Basins []int32
 	// Findings tells what is doubtful about points and lines.
 	Findings []field.Finding
+
+	count *count // how tau turns, for loops and regions
 }
 
 // Type is the kind of a critical point.
