@@ -11,6 +11,8 @@ func (t *tableReader) connect(opt Options) (field.Raw, error) {
 	raw := &t.raw
 	t.dropPlaceless()
 	switch {
+	case len(raw.Points) == 0:
+		return *raw, t.fail("", "check the export", "no row of the table has a position")
 	case opt.Surface != nil:
 		return *raw, nil // attach does it, as for every kind of file
 	case t.grid[0] != nil:
@@ -159,5 +161,32 @@ func rowLength(points []r3.Vec) int {
 			return 0
 		}
 	}
+	if !smoothCells(points, n) {
+		return 0
+	}
 	return n
+}
+
+// smoothCells tells whether the cells of a grid make a surface: neighbours do not face away from one another, and no
+// more than some are without area, as at a pole.
+func smoothCells(points []r3.Vec, n int) bool {
+	rows := len(points) / n
+	normal := func(i, j int) r3.Vec {
+		k := j*n + i
+		return points[k+n+1].Sub(points[k]).Cross(points[k+n].Sub(points[k+1]))
+	}
+	flat := 0
+	for j := range rows - 1 {
+		for i := range n - 1 {
+			c := normal(i, j)
+			if c == (r3.Vec{}) {
+				flat++
+			}
+			if i+2 < n && c.Dot(normal(i+1, j)) < 0 || j+2 < rows && c.Dot(normal(i, j+1)) < 0 {
+				return false
+			}
+		}
+	}
+	const mostFlat = 4 // one cell in four
+	return mostFlat*flat <= (n-1)*(rows-1)
 }

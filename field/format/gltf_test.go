@@ -45,7 +45,7 @@ func gltfOf(doc object, views ...[]byte) []byte {
 		"asset": object{"version": "2.0"}, "bufferViews": list,
 		"buffers": array{object{"byteLength": len(buffer),
 			"uri": "data:application/octet-stream;base64," + base64.StdEncoding.EncodeToString(buffer)}},
-		"nodes": array{object{"mesh": 0}},
+		"nodes":  array{object{"mesh": 0}},
 		"meshes": array{object{"primitives": array{object{"attributes": object{"POSITION": 0, "_TAU": 1}, "indices": 2}}}},
 		"accessors": array{
 			object{"bufferView": 0, "componentType": 5126, "count": 3, "type": "VEC3"},
