@@ -9,7 +9,7 @@ import (
 
 // farShare is the share of the run's size by which a given point may miss the surface: points read off a picture or a
 // drawing miss it by less, points in another unit or frame by much more.
-const farShare = 0.05
+const farShare = 0.1
 
 // PlaceError says that a given point lies too far from the surface to be meant.
 type PlaceError struct {

@@ -12,13 +12,15 @@ import (
 
 	"shearprint/field"
 	"shearprint/field/topology"
+	"shearprint/field/trace"
 )
 
 // Study answers questions about one field. It may be used by several goroutines at once.
 type Study struct {
 	f *field.Field
 
-	mu     sync.Mutex
+	mu     sync.Mutex         // guards what follows
+	tracer *trace.Tracer      // made at the first trace
 	points *topology.Skeleton // all points, without lines; nil until asked for
 }
 
@@ -32,6 +34,9 @@ func (s *Study) Field() *field.Field { return s.f }
 func (s *Study) allPoints(ctx context.Context) (*topology.Skeleton, error) {
 	s.mu.Lock()
 	defer s.mu.Unlock()
+	if err := ctx.Err(); err != nil {
+		return nil, err
+	}
 	if s.points != nil {
 		return s.points, nil
 	}
