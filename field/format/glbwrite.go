@@ -193,12 +193,14 @@ func (g *glbWriter) single(p r3.Vec) [3]float32 {
 	return [3]float32{float32(p.X), float32(p.Y), float32(p.Z)}
 }
 
-// bounds returns the least and greatest coordinates as they are written, which the format wants beside the positions.
+// bounds returns the least and greatest finite coordinates as they are written, which the format wants beside the
+// positions.
 func (g *glbWriter) bounds() (lo, hi []float64) {
 	box := r3.EmptyBox()
 	for _, p := range g.raw.Points {
-		if s := g.single(p); p.Finite() {
-			box = box.Include(r3.Vec{X: float64(s[0]), Y: float64(s[1]), Z: float64(s[2])})
+		s := g.single(p)
+		if q := (r3.Vec{X: float64(s[0]), Y: float64(s[1]), Z: float64(s[2])}); q.Finite() {
+			box = box.Include(q)
 		}
 	}
 	if box.Empty() {
