@@ -17,7 +17,7 @@ import (
 )
 
 // plane builds a field on a disk of the given radius around the origin.
-func plane(t *testing.T, radius float64, tau func(x, y float64) (float64, float64)) *study.Study {
+func plane(t testing.TB, radius float64, tau func(x, y float64) (float64, float64)) *study.Study {
 	t.Helper()
 	raw := exact.Disk(radius, 4000)
 	raw.Units = field.Units{Length: "m", Tau: "Pa", P: "Pa"}

@@ -63,6 +63,10 @@ type Jump struct {
 // rotations along three edges stay unambiguous up to pi, and a field that a mesh resolves turns far less.
 const sharpTurn = math.Pi / 4
 
+// roughShare is the share of sharp turns from which the field as a whole is called rough. Smooth solutions turn sharply
+// only next to their critical points, which are few.
+const roughShare = 0.02
+
 // Inspect tells the health of mesh and field.
 func (s *Study) Inspect(ctx context.Context) (*Inspection, error) {
 	if err := ctx.Err(); err != nil {
@@ -91,6 +95,13 @@ func (s *Study) Inspect(ctx context.Context) (*Inspection, error) {
 	}
 	out.Ranges = Ranges{Tau: rangeOf(sizes), P: rangeOf(f.P), Cp: rangeOf(f.Cp)}
 	s.jumps(out)
+	if share := float64(out.SharpTurns) / float64(max(1, out.Edges)); share > roughShare {
+		out.Findings = append(out.Findings, field.Finding{
+			Level: field.Doubtful, Code: "rough-field", Count: out.SharpTurns,
+			Text: fmt.Sprintf("tau turns by more than 45 degrees along %.2g %% of the edges: the mesh is too coarse for the field, "+
+				"or the solution is not converged; weak critical points are noise", 100*share),
+		})
+	}
 	return out, nil
 }
 

@@ -13,7 +13,7 @@ import (
 	"shearprint/field/study"
 )
 
-func mustBuild(t *testing.T, raw field.Raw) *field.Field {
+func mustBuild(t testing.TB, raw field.Raw) *field.Field {
 	t.Helper()
 	f, err := field.Build(raw)
 	if err != nil {
