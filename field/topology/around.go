@@ -1,6 +1,7 @@
 package topology
 
 import (
+	"iter"
 	"slices"
 
 	"shearprint/field"
@@ -88,8 +89,23 @@ func isCrease(n, m r3.Vec) bool {
 	return n.Dot(m) < c
 }
 
-// measure finds the vertices within the given number of edges of the corners of tris.
-func (a *around) measure(tris []int32, rings int32) {
+// near runs over the triangles that touch a vertex within the given number of edges of the corners of tris, nearer
+// vertices first, and may name a triangle more than once. It crosses creases.
+func (a *around) near(rings int32, tris ...int32) iter.Seq[int32] {
+	return func(yield func(int32) bool) {
+		a.stamp++
+		for _, v := range a.measure(tris, rings) {
+			for h := range a.f.Fan(v) {
+				if !yield(h / 3) {
+					return
+				}
+			}
+		}
+	}
+}
+
+// measure finds the vertices within the given number of edges of the corners of tris, nearer ones first.
+func (a *around) measure(tris []int32, rings int32) []int32 {
 	f := a.f
 	base := a.stamp * distanceSteps
 	var list []int32
@@ -121,6 +137,7 @@ func (a *around) measure(tris []int32, rings int32) {
 			reach(f.Tail(field.Prev(h)))
 		}
 	}
+	return list
 }
 
 // clean lists the vertices of the patch that lie on no crease: the others mix the vectors of both sides.

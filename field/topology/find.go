@@ -4,7 +4,6 @@ import (
 	"cmp"
 	"context"
 	"fmt"
-	"math"
 	"slices"
 	"sync"
 
@@ -27,6 +26,9 @@ func Find(ctx context.Context, f *field.Field, opt Options) (*Skeleton, error) {
 		return nil, err
 	}
 	progress(0.1)
+	if err := c.joinKnots(ctx); err != nil {
+		return nil, err
+	}
 	if err := c.findRobustness(ctx); err != nil {
 		return nil, err
 	}
@@ -47,7 +49,9 @@ func Find(ctx context.Context, f *field.Field, opt Options) (*Skeleton, error) {
 		return nil, err
 	}
 	s.order()
-	s.tellClose()
+	if err := s.tellClose(ctx); err != nil {
+		return nil, err
+	}
 	s.makeLedger(c)
 	s.tellDoubts()
 	progress(1)
@@ -96,29 +100,31 @@ func compareVec(a, b r3.Vec) int {
 const closeEdges = 3
 
 // tellClose marks the points that have another within closeEdges along the surface.
-func (s *Skeleton) tellClose() {
-	owner := map[int32]int{} // number of the point by triangle; for looking up only
+func (s *Skeleton) tellClose(ctx context.Context) error {
+	owner := make([]int32, len(s.Field.Tris)) // number of the point in each triangle, from 1
 	for i, p := range s.Points {
-		owner[p.Loc.Tri] = i
+		owner[p.Loc.Tri] = int32(i + 1)
 	}
-	a := newAround(s.Field)
-	for i := range s.Points {
-		p := &s.Points[i]
-		a.gather(closeEdges, p.Loc.Tri)
-		for _, t := range a.faces {
-			k, ok := owner[t]
-			if !ok || k == i {
-				continue
-			}
-			q := &s.Points[k]
-			if q.Position.Sub(p.Position).Norm() < float64(closeEdges*math.Max(p.Size, q.Size)) {
-				for _, x := range [2]*Point{p, q} {
-					x.Resolved = false
-					addNote(x, noteClose)
+	pool := sync.Pool{New: func() any { return newAround(s.Field) }}
+	return inBlocks(ctx, len(s.Points), pointBlock, func(from, to int) {
+		a := pool.Get().(*around)
+		for i := from; i < to; i++ {
+			p := &s.Points[i]
+			for t := range a.near(closeEdges-1, p.Loc.Tri) {
+				k := int(owner[t]) - 1
+				if k < 0 || k == i {
+					continue
+				}
+				q := &s.Points[k]
+				if q.Position.Sub(p.Position).Norm() < float64(closeEdges*p.Size) {
+					p.Resolved = false
+					addNote(p, noteClose)
+					break
 				}
 			}
 		}
-	}
+		pool.Put(a)
+	})
 }
 
 // tellDoubts adds findings on the points that the mesh does not resolve.

@@ -13,10 +13,11 @@ type seed struct {
 	tris    []int32 // ascending
 	index   int     // of the doubled surface for a half point
 	half    bool
-	zeros   []int32  // exact zero vertices, ascending
-	rimEdge int32    // a half point's rim half-edge along which tau turns round; -1 where a zero vertex lies on the rim
-	mirror  *stretch // a half point's plane of symmetry
-	robust  float64  // as a share of MaxTau
+	zeros   []int32    // exact zero vertices, ascending
+	rimEdge int32      // a half point's rim half-edge along which tau turns round; -1 where a zero vertex lies on the rim
+	mirror  *stretch   // a half point's plane of symmetry
+	knot    *field.Loc // the place of a zero of second order that the mesh took apart; nil for other points
+	robust  float64    // as a share of MaxTau
 }
 
 // weight is the seed's share in sums, in halves.

@@ -32,6 +32,7 @@ const (
 	noteTouch   = "tau is exactly zero here but turns around it as if it were not"
 	noteCentre  = "a centre: the divergence of tau is below the error"
 	noteMany    = "more than a linear zero: the index says so"
+	noteKnot    = "a zero of second order, or several points nearer than one edge: the slopes vanish together with tau"
 	noteNoSlope = "tau does not vary around the point"
 )
 
@@ -81,6 +82,8 @@ func (p *placer) special(s *seed, pt *Point) {
 		note = noteRegion
 	case s.index == 0:
 		note = noteTouch
+	case s.knot != nil:
+		note = noteKnot
 	case s.index != 1 && s.index != -1:
 		note = noteMany
 	case pt.Type == Degenerate && pt.Resolved:
@@ -97,6 +100,8 @@ func (p *placer) special(s *seed, pt *Point) {
 func (p *placer) start(s *seed) field.Loc {
 	f := p.c.f
 	switch {
+	case s.knot != nil:
+		return *s.knot
 	case len(s.zeros) > 0:
 		return p.cornerOf(s, p.middle(s.zeros))
 	case s.half:
