@@ -107,7 +107,7 @@ func gofmt() error {
 
 func vet() error {
 	return errors.Join(
-		do(nil, "go", "vet", "./...", "./.ci/..."),
+		do(nil, "go", "vet", "./...", "./.ci/check"),
 		do(browser, "go", "vet", "./wasm/...", "./field/...", "./render/..."),
 	)
 }
@@ -123,7 +123,7 @@ func staticcheck() error {
 	if err := do(nil, "go", "build", "-o", tool, "honnef.co/go/tools/cmd/staticcheck"); err != nil {
 		return err
 	}
-	return errors.Join(do(nil, tool, "./...", "./.ci/..."), do(browser, tool, "./wasm/..."))
+	return errors.Join(do(nil, tool, "./...", "./.ci/check"), do(browser, tool, "./wasm/..."))
 }
 
 func test() error { return do(nil, "go", "test", "-shuffle=on", "./...") }

@@ -30,7 +30,7 @@ var topLevel = regexp.MustCompile(
 	`^(\..*|cmd|render|field|wasm|web|testdata|go\.mod|go\.sum|README\.md|DEVELOPERS\.md|LICENSE)$`)
 
 const (
-	longestLine = 140     // characters, a tab counting as four, in Go source: what review tools show unwrapped
+	longestLine = 140     // characters in Go source: what review tools show unwrapped
 	largestFile = 4 << 20 // bytes
 )
 
@@ -76,7 +76,7 @@ func checkText(name, data string) error {
 				errs = append(errs, fmt.Errorf("%s:%d: %s", name, number, f.what))
 			}
 		}
-		width := utf8.RuneCountInString(strings.TrimRight(line, "\r\n")) + 3*strings.Count(line, "\t")
+		width := utf8.RuneCountInString(strings.TrimRight(line, "\r\n"))
 		if strings.HasSuffix(name, ".go") && width > longestLine {
 			errs = append(errs, fmt.Errorf("%s:%d: %d characters", name, number, width))
 		}

@@ -67,8 +67,8 @@ var calls = []call{
 var errNoPoint = errors.New(`the point is missing: give {"at": [x, y, z]}`)
 
 // Call answers the question of that name with the JSON that the command of that name prints with --json: inspect,
-// topology {min_robustness, lines}, probe {at}, trace {at}, loop {through}, ledger {body, nodes, saddles, ...}. Arguments are a JSON object, or nothing; a
-// name or an argument that is not known is an error.
+// topology {min_robustness, lines}, probe {at}, trace {at}, loop {through}, ledger {body, nodes, saddles, ...}.
+// Arguments are a JSON object, or nothing; a name or an argument that is not known is an error.
 func (s *Study) Call(ctx context.Context, name string, args json.RawMessage) (json.RawMessage, error) {
 	i := slices.IndexFunc(calls, func(c call) bool { return c.name == name })
 	if i < 0 {
