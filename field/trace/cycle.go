@@ -1,0 +1,42 @@
+package trace
+
+import "math"
+
+const (
+	// closeShare is the share of an edge within which a curve that returns to it has closed on itself.
+	closeShare = 1e-6
+	// limitShare is the share of an edge within which the limit of a contracting sequence of returns must be.
+	limitShare = 1e-3
+	// minTurns is the number of returns that must contract before their limit is believed.
+	minTurns = 3
+)
+
+// returned notes the crossing of half-edge h and tells whether the curve has closed on itself. The half-edge is
+// a section of the flow, and the shares at which the curve crosses it are iterates of its return map: the curve is
+// a closed orbit where it comes back to the same share, and runs into one where the distances between successive
+// returns shrink in a geometric sequence whose limit, by Aitken's rule, is on the edge and near.
+func (w *walk) returned(h int32, share float64) bool {
+	now := visit{share: share, at: len(w.path.Locs) - 1}
+	old, ok := w.last[h]
+	if ok {
+		now.miss, now.turns = share-old.share, old.turns+1
+	}
+	w.last[h] = now
+	if !ok {
+		return false
+	}
+	near := math.Abs(now.miss) < closeShare
+	if !near && now.turns >= minTurns && old.miss != 0 {
+		q := now.miss / old.miss
+		if q > 0 && q < 1 {
+			rest := float64(now.miss*q) / (1 - q)
+			limit := share + rest
+			near = math.Abs(rest) < limitShare && limit > 0 && limit < 1
+		}
+	}
+	if near {
+		w.path.Loop, w.path.Drift = old.at, math.Abs(now.miss)
+		w.finish(Cycle)
+	}
+	return near
+}
