@@ -24,6 +24,9 @@ Exit status 3 tells that the ledger does not balance.`,
   shearprint ledger --nodes 1 --saddles 2 --body patch --interior 0 --exterior 4`,
 		Args: noWords,
 		RunE: func(cmd *cobra.Command, _ []string) error {
+			if err := required(cmd, "body", body, "--body isolated, on-wall or patch"); err != nil {
+				return err
+			}
 			if err := h.Body.UnmarshalText([]byte(body)); err != nil {
 				return usagef("--body %q: give isolated, on-wall or patch", body)
 			}

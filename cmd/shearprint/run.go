@@ -147,6 +147,9 @@ func oneRun(cmd *cobra.Command, args []string) error {
 	if len(args) != 1 {
 		return usagef("%s takes one RUN, not %d; see %s --help", cmd.Name(), len(args), cmd.CommandPath())
 	}
+	if args[0] == "" {
+		return usagef("%s: the name of the RUN is empty; check the script's variables", cmd.Name())
+	}
 	return nil
 }
 
