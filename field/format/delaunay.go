@@ -17,7 +17,7 @@ import (
 // bits, an orientation 55 and an in-circle determinant 112, which fit two machine words.
 const gridBits = 26
 
-type gridPoint struct{ x, y int64 }
+type gridPoint struct{ x, y int32 }
 
 // divided is the state of the division: directed edges e and e^1 are the two ways along one edge.
 type divided struct {
@@ -63,8 +63,8 @@ func toGrid(points []r3.Vec2) (number []int32, grid []gridPoint, err error) {
 	number = make([]int32, len(points))
 	for i, p := range points {
 		all[i] = gridPoint{
-			int64(math.Floor((p.X - lo.X) / size * (1<<gridBits - 1))),
-			int64(math.Floor((p.Y - lo.Y) / size * (1<<gridBits - 1))),
+			int32(math.Floor((p.X - lo.X) / size * (1<<gridBits - 1))),
+			int32(math.Floor((p.Y - lo.Y) / size * (1<<gridBits - 1))),
 		}
 		number[i] = int32(i)
 	}
@@ -137,7 +137,7 @@ func (d *divided) remove(e int32) {
 // turn is positive where a, b, c run counter-clockwise, zero where they are in line.
 func (d *divided) turn(a, b, c int32) int64 {
 	p, q, r := d.p[a], d.p[b], d.p[c]
-	return (q.x-p.x)*(r.y-p.y) - (q.y-p.y)*(r.x-p.x)
+	return int64(q.x-p.x)*int64(r.y-p.y) - int64(q.y-p.y)*int64(r.x-p.x)
 }
 
 func (d *divided) leftOf(v, e int32) bool  { return d.turn(v, d.org[e], d.dest(e)) > 0 }

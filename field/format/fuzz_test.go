@@ -89,7 +89,9 @@ func FuzzPLY(f *testing.F) {
 	f.Add([]byte("ply\nformat binary_little_endian 1.0\n" + body + values + faces))
 	f.Add([]byte("ply\r\nformat binary_big_endian 1.0\r\nelement vertex 1\r\nproperty double x\r\nproperty char y\r\nproperty ushort z\r\n" +
 		"element odd 1\r\nproperty list uint int8 a\r\nend_header\r\n\x3f\xf0\x00\x00\x00\x00\x00\x00\x01\x00\x01\x00\x00\x00\x02\x01\x02"))
-	f.Fuzz(func(t *testing.T, data []byte) { checkAny(t, append([]byte("ply\n"), bytes.TrimPrefix(data, []byte("ply\n"))...), format.Options{}) })
+	f.Fuzz(func(t *testing.T, data []byte) {
+		checkAny(t, append([]byte("ply\n"), bytes.TrimPrefix(data, []byte("ply\n"))...), format.Options{})
+	})
 }
 
 func FuzzGLTF(f *testing.F) {
@@ -97,7 +99,9 @@ func FuzzGLTF(f *testing.F) {
 	f.Add(gltfOf(object{"buffers": array{object{"byteLength": 84, "uri": "beside.bin"}}}, cornerBytes, tauBytes, indexBytes))
 	f.Add(gltfOf(object{"nodes": array{object{"children": []int{1}, "rotation": []float64{0, 0, 1, 1}},
 		object{"mesh": 0, "scale": []float64{1, -2, 1}}}, "scenes": array{object{"nodes": []int{0}}}}, cornerBytes, tauBytes, indexBytes))
-	f.Fuzz(func(t *testing.T, data []byte) { checkAny(t, append([]byte("{"), bytes.TrimPrefix(data, []byte("{"))...), format.Options{}) })
+	f.Fuzz(func(t *testing.T, data []byte) {
+		checkAny(t, append([]byte("{"), bytes.TrimPrefix(data, []byte("{"))...), format.Options{})
+	})
 }
 
 func FuzzGLB(f *testing.F) {
@@ -108,7 +112,9 @@ func FuzzGLB(f *testing.F) {
 		}
 		f.Add(b.Bytes())
 	}
-	f.Fuzz(func(t *testing.T, data []byte) { checkAny(t, append([]byte("glTF"), bytes.TrimPrefix(data, []byte("glTF"))...), format.Options{}) })
+	f.Fuzz(func(t *testing.T, data []byte) {
+		checkAny(t, append([]byte("glTF"), bytes.TrimPrefix(data, []byte("glTF"))...), format.Options{})
+	})
 }
 
 func FuzzTable(f *testing.F) {

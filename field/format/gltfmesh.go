@@ -32,8 +32,14 @@ func (r *gltfReader) readPrimitives() error {
 	anyTau, anyP, anyCp := false, false, false
 	var missing error
 	named := false
+	known := map[*gltfPrimitive]attributes{} // primitives that several nodes place are matched once
 	for i, p := range r.places {
-		a, miss := r.match(p)
+		a, ok := known[p.prim]
+		var miss error
+		if !ok {
+			a, miss = r.match(p)
+			known[p.prim] = a
+		}
 		if miss == nil {
 			named = true
 		} else if missing == nil {
@@ -103,15 +109,18 @@ func (r *gltfReader) match(p placed) (attributes, error) {
 	if opt.Tau != "" {
 		wanted = [][]string{{normal(opt.Tau)}}
 	}
+	vectors := map[string]string{} // reduced name to name
+	for _, name := range names {
+		if i := p.prim.Attributes[name]; i >= 0 && i < len(r.doc.Accessors) && r.doc.Accessors[i].Type == "VEC3" {
+			vectors[normal(name)] = name
+		}
+	}
 	for k, list := range wanted {
 		for _, base := range list {
-			for _, name := range names {
-				i := p.prim.Attributes[name]
-				if a.tau[0] < 0 && normal(name) == base && i >= 0 && i < len(r.doc.Accessors) && r.doc.Accessors[i].Type == "VEC3" {
-					a.tau[0], a.vector = i, true
-					r.took("tau", name, k == 1, name == "_TAU")
-					opt.Tau = ""
-				}
+			if name, ok := vectors[base]; ok && a.tau[0] < 0 {
+				a.tau[0], a.vector = p.prim.Attributes[name], true
+				r.took("tau", name, k == 1, name == "_TAU")
+				opt.Tau = ""
 			}
 		}
 	}

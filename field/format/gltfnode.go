@@ -36,7 +36,9 @@ func (r *gltfReader) walk() error {
 	}
 	if len(r.doc.Nodes) == 0 { // a library of meshes that no node places
 		for m := range r.doc.Meshes {
-			r.place(-1-m, m, start)
+			if err := r.place(-1-m, m, start); err != nil {
+				return err
+			}
 		}
 	}
 	return r.readPrimitives()
@@ -106,7 +108,9 @@ func (r *gltfReader) visit(i int, above pose, depth int) error {
 		if n.Skin != nil {
 			return r.fail(place, "export the surface without bones", "its mesh is bent by a skin")
 		}
-		r.place(i, m, p)
+		if err := r.place(i, m, p); err != nil {
+			return err
+		}
 	}
 	for _, c := range n.Children {
 		if err := r.visit(c, p, depth+1); err != nil {
@@ -116,12 +120,17 @@ func (r *gltfReader) visit(i int, above pose, depth int) error {
 	return nil
 }
 
-func (r *gltfReader) place(node, m int, p pose) {
+// place notes the primitives of mesh m where a node puts them.
+func (r *gltfReader) place(node, m int, p pose) error {
 	mesh := &r.doc.Meshes[m]
+	if len(r.places)+len(mesh.Primitives) > maxObjects {
+		return r.fail(fmt.Sprintf("mesh %d", m), "export each mesh once", "repeated meshes make more than %d primitives", maxObjects)
+	}
 	for k := range mesh.Primitives {
 		where := fmt.Sprintf("mesh %d primitive %d", m, k)
 		r.places = append(r.places, placed{p, where, &mesh.Primitives[k], node})
 	}
+	return nil
 }
 
 // nodePose reads a node's own map, given as a matrix or as translation, rotation and scale.

@@ -9,9 +9,10 @@ import (
 // taken in floating point; where its error could hide the sign, in whole numbers of 128 bits.
 func (d *divided) inCircle(a, b, c, v int32) bool {
 	o := d.p[v]
-	ax, ay := d.p[a].x-o.x, d.p[a].y-o.y
-	bx, by := d.p[b].x-o.x, d.p[b].y-o.y
-	cx, cy := d.p[c].x-o.x, d.p[c].y-o.y
+	from := func(p gridPoint) (x, y int64) { return int64(p.x - o.x), int64(p.y - o.y) }
+	ax, ay := from(d.p[a])
+	bx, by := from(d.p[b])
+	cx, cy := from(d.p[c])
 	a2, b2, c2 := ax*ax+ay*ay, bx*bx+by*by, cx*cx+cy*cy
 	bc, ca, ab := bx*cy-by*cx, cx*ay-cy*ax, ax*by-ay*bx
 	x, y, z := float64(float64(a2)*float64(bc)), float64(float64(b2)*float64(ca)), float64(float64(c2)*float64(ab))

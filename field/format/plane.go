@@ -32,6 +32,7 @@ func triangulate(src source, raw *field.Raw) error {
 	if err != nil {
 		return src.fail("", remedy, "the points cannot be triangulated: %v", err)
 	}
+	made := len(tris)
 	kept := trimLong(tris, flat)
 	if len(kept) == 0 {
 		return src.fail("", remedy, "the points make no triangle")
@@ -40,7 +41,7 @@ func triangulate(src source, raw *field.Raw) error {
 	note(raw, field.Doubtful, "reconstructed", len(kept), "",
 		"the table has no triangles: %d were made between its points in their best plane (Delaunay), %d long ones at rims and "+
 			"gaps left out; holes and edges of the body may be bridged; give the geometry with --surface if there is one",
-		len(kept), len(tris)-len(kept))
+		len(kept), made-len(kept))
 	return nil
 }
 

@@ -10,14 +10,14 @@ import (
 // of neighbouring points vary by less than two in any mesh that resolves a flow.
 const longRatio = 4
 
-// trimLong drops triangles that bridge bays of the outline and holes in the data: those whose longest edge exceeds
+// trimLong drops, in place, triangles that bridge bays of the outline and holes in the data: those whose longest edge exceeds
 // longRatio times what is usual at two of their corners. Usual is the lower quartile over the triangles around a point.
 func trimLong(tris [][3]int32, p []r3.Vec2) [][3]int32 {
-	long := make([]float64, len(tris))
+	long := make([]float32, len(tris)) // single precision is enough to tell long from short
 	start := make([]int32, len(p)+1)
 	for t, c := range tris {
 		for k := range 3 {
-			long[t] = max(long[t], p[c[(k+1)%3]].Sub(p[c[k]]).Norm())
+			long[t] = max(long[t], float32(p[c[(k+1)%3]].Sub(p[c[k]]).Norm()))
 			start[c[k]+1]++
 		}
 	}
@@ -32,8 +32,8 @@ func trimLong(tris [][3]int32, p []r3.Vec2) [][3]int32 {
 			fill[v]++
 		}
 	}
-	usual := make([]float64, len(p))
-	var buf []float64
+	usual := make([]float32, len(p))
+	var buf []float32
 	for v := range p {
 		buf = buf[:0]
 		for _, t := range around[start[v]:start[v+1]] {
@@ -44,9 +44,9 @@ func trimLong(tris [][3]int32, p []r3.Vec2) [][3]int32 {
 			usual[v] = buf[(len(buf)-1)/4]
 		}
 	}
-	kept := make([][3]int32, 0, len(tris))
+	kept := tris[:0]
 	for t, c := range tris {
-		u := [3]float64{usual[c[0]], usual[c[1]], usual[c[2]]}
+		u := [3]float32{usual[c[0]], usual[c[1]], usual[c[2]]}
 		slices.Sort(u[:])
 		if long[t] <= longRatio*u[1] {
 			kept = append(kept, c)
