@@ -191,7 +191,6 @@ func (u *turner) standIns(r *rimReading, edges []int32) {
 		}
 	}
 	for id, s := range r.stretches {
-		along := s.count
 		known := -1 // the first vertex of the stretch that is not zero
 		for k := range s.count {
 			if !f.IsZero(f.Tail(edges[(s.first+k)%n])) {
@@ -203,7 +202,7 @@ func (u *turner) standIns(r *rimReading, edges []int32) {
 			continue
 		}
 		last := u.ahead(f.Tail(edges[(s.first+known)%n]))
-		for k := range along {
+		for k := range s.count {
 			i := (s.first + k) % n
 			v := f.Tail(edges[i])
 			if !f.IsZero(v) {
@@ -220,24 +219,39 @@ func (u *turner) standIns(r *rimReading, edges []int32) {
 	}
 }
 
-// meanAround returns the direction that the non-zero neighbours of zero vertex v bring to it along the edges, and that
-// of the rim where they bring none or cancel.
+// meanAround returns the direction that the non-zero neighbours of zero vertex v bring to it along the edges. Where they
+// cancel, tau turns round along the rim, and it does so over the side to which it points at the neighbours on the rim: it
+// keeps crossing the rim. Where nothing is brought the rim's own direction has to do.
 func (u *turner) meanAround(v int32) float64 {
 	f := u.f
 	var sum r3.Vec2
-	for h := range f.Fan(v) {
-		if w := f.Tip(h); !f.IsZero(w) {
-			sum = sum.Add(r3.Polar(1, u.angle[w]-f.Transport(h)))
+	inward := 0.0
+	add := func(w int32, angle float64) {
+		if f.IsZero(w) {
+			return
 		}
-		if p := field.Prev(h); f.Twin[p] < 0 && !f.IsZero(f.Tail(p)) { // the last edge of the fan has only this half-edge
-			sum = sum.Add(r3.Polar(1, u.angle[f.Tail(p)]+f.Transport(p)))
+		sum = sum.Add(r3.Polar(1, angle))
+		if f.OnRim(w) {
+			s, _ := r3.SinCos(u.angle[w] - forward(f.Mesh, w))
+			inward += s
+		}
+	}
+	for h := range f.Fan(v) {
+		add(f.Tip(h), u.angle[f.Tip(h)]-f.Transport(h))
+		if p := field.Prev(h); f.Twin[p] < 0 { // the last edge of the fan has only this half-edge
+			add(f.Tail(p), u.angle[f.Tail(p)]+f.Transport(p))
 		}
 	}
 	const cancelled = 1e-9 // of unit vectors: what rounding leaves of a sum that is zero
-	if sum.Norm() < cancelled {
-		return forward(f.Mesh, v)
+	switch {
+	case sum.Norm() > cancelled:
+		return sum.Angle()
+	case inward > cancelled:
+		return forward(f.Mesh, v) + math.Pi/2
+	case inward < -cancelled:
+		return forward(f.Mesh, v) - math.Pi/2
 	}
-	return sum.Angle()
+	return forward(f.Mesh, v)
 }
 
 // countRim finds the reversals, the exact term and the tangencies of one rim.
