@@ -61,8 +61,8 @@ func millionCSV() []byte {
 	return b.Bytes()
 }
 
-// BenchmarkLoad reads a million triangles from each kind of file, and beside it the same bytes from disk without looking
-// at them.
+// BenchmarkLoad reads a million triangles from each kind of file, and beside it the same bytes from disk without
+// looking at them.
 func BenchmarkLoad(b *testing.B) {
 	for _, c := range []struct {
 		name string

@@ -20,7 +20,8 @@ func (t *tableReader) connect(opt Options) (field.Raw, error) {
 	}
 	if n := rowLength(raw.Points); n > 0 {
 		rows := len(raw.Points) / n
-		note(raw, field.Note, "structured", n*rows, "", "the rows form a grid of %d by %d points; its cells are the faces", n, rows)
+		note(raw, field.Note, "structured", n*rows, "", "the rows form a grid of %d by %d points; its cells are the faces",
+			n, rows)
 		addCells(raw, n, rows, func(i, j int) int32 { return int32(j*n + i) })
 		return *raw, nil
 	}
@@ -51,7 +52,8 @@ func (t *tableReader) dropPlaceless() {
 	if first < 0 {
 		return
 	}
-	note(raw, field.Doubtful, "rows-without-place", len(raw.Points)-n, "", "%d rows have no position and were left out; the first is row %d",
+	note(raw, field.Doubtful, "rows-without-place", len(raw.Points)-n, "",
+		"%d rows have no position and were left out; the first is row %d",
 		len(raw.Points)-n, first+1)
 	t.cut(n)
 }
@@ -128,7 +130,8 @@ func (t *tableReader) connectIndices() error {
 	if len(raw.Tris) == 0 {
 		return t.fail("header", "give the geometry with --surface", "the grid of i and j has no whole cell")
 	}
-	note(raw, field.Note, "structured", len(raw.Points), "", "columns i and j make a grid of %d by %d points; its cells are the faces",
+	note(raw, field.Note, "structured", len(raw.Points), "",
+		"columns i and j make a grid of %d by %d points; its cells are the faces",
 		w, int(rows))
 	return nil
 }

@@ -39,15 +39,16 @@ type headerLine struct {
 	comment bool
 }
 
-// tellDialect finds the first row of numbers and the header before it: the last line above it that names as many columns,
-// whether or not it begins with a comment mark.
+// tellDialect finds the first row of numbers and the header before it: the last line above it that names as many
+// columns, whether or not it begins with a comment mark.
 func tellDialect(src source, data []byte) (dialect, error) {
 	var words []headerLine
 	at, line := 0, 1
 	for ; line <= maxPreamble && at < len(data); line++ {
 		text, next := cutLine(data, at)
 		if len(text) > maxLine {
-			return dialect{}, src.fail(fmt.Sprintf("line %d", line), "export the table with line ends", "a line of more than %d bytes", maxLine)
+			return dialect{}, src.fail(fmt.Sprintf("line %d", line), "export the table with line ends",
+				"a line of more than %d bytes", maxLine)
 		}
 		trimmed := strings.TrimSpace(string(text))
 		switch {

@@ -37,7 +37,8 @@ func checkAny(t *testing.T, data []byte, opt format.Options) {
 	}
 	again, err := format.Read("again", b.Bytes(), format.Options{})
 	if err != nil || len(again.Points) != len(raw.Points) || len(again.Tris) != len(raw.Tris) {
-		t.Fatalf("PLY again: %v, %d points of %d, %d triangles of %d", err, len(again.Points), len(raw.Points), len(again.Tris), len(raw.Tris))
+		t.Fatalf("PLY again: %v, %d points of %d, %d triangles of %d", err, len(again.Points), len(raw.Points),
+			len(again.Tris), len(raw.Tris))
 	}
 	b.Reset()
 	if err := format.WriteRawGLB(&b, raw); err != nil {
@@ -80,15 +81,20 @@ func checkRaw(t *testing.T, raw field.Raw) {
 }
 
 func FuzzPLY(f *testing.F) {
-	const body = "element vertex 4\nproperty float x\nproperty float y\nproperty float z\nproperty float tau_x\nproperty float tau_y\n" +
-		"property float tau_z\nproperty float p\nelement face 2\nproperty list uchar int vertex_indices\nproperty float cp\nend_header\n"
+	const body = "element vertex 4\nproperty float x\nproperty float y\nproperty float z\nproperty float " +
+		"tau_x\nproperty float tau_y\n" +
+		"property float tau_z\nproperty float p\nelement face 2\nproperty list uchar int vertex_indices\nproperty float " +
+		"cp\nend_header\n"
 	f.Add([]byte("ply\nformat ascii 1.0\ncomment units x y z [mm], tau [Pa]\n" + body +
 		"0 0 0 1 0 0 5\n1 0 0 1 0 0 5\n1 1 0 1 0 0 5\n0 1 0.1 nan 0 0 5\n3 0 1 2 1\n4 0 1 2 3 0.5\n"))
 	values := string(bytesOf([28]float32{0, 0, 0, 1, 1, 0, 0, 1, 0, 0, 1, 1, 0, 0, 1, 1, 0, 0, 1, 0, 0, 0, 1, 0, 1}))
-	faces := "\x03" + string(bytesOf([3]int32{0, 1, 2}, float32(1))) + "\x04" + string(bytesOf([4]int32{0, 1, 2, 3}, float32(2)))
+	faces := "\x03" + string(bytesOf([3]int32{0, 1, 2}, float32(1))) + "\x04" + string(bytesOf([4]int32{0, 1, 2, 3},
+		float32(2)))
 	f.Add([]byte("ply\nformat binary_little_endian 1.0\n" + body + values + faces))
-	f.Add([]byte("ply\r\nformat binary_big_endian 1.0\r\nelement vertex 1\r\nproperty double x\r\nproperty char y\r\nproperty ushort z\r\n" +
-		"element odd 1\r\nproperty list uint int8 a\r\nend_header\r\n\x3f\xf0\x00\x00\x00\x00\x00\x00\x01\x00\x01\x00\x00\x00\x02\x01\x02"))
+	f.Add([]byte("ply\r\nformat binary_big_endian 1.0\r\nelement vertex 1\r\nproperty double x\r\nproperty char " +
+		"y\r\nproperty ushort z\r\n" +
+		"element odd 1\r\nproperty list uint int8 " +
+		"a\r\nend_header\r\n\x3f\xf0\x00\x00\x00\x00\x00\x00\x01\x00\x01\x00\x00\x00\x02\x01\x02"))
 	f.Fuzz(func(t *testing.T, data []byte) {
 		checkAny(t, append([]byte("ply\n"), bytes.TrimPrefix(data, []byte("ply\n"))...), format.Options{})
 	})
@@ -96,9 +102,11 @@ func FuzzPLY(f *testing.F) {
 
 func FuzzGLTF(f *testing.F) {
 	f.Add(gltfOf(nil, cornerBytes, tauBytes, indexBytes))
-	f.Add(gltfOf(object{"buffers": array{object{"byteLength": 84, "uri": "beside.bin"}}}, cornerBytes, tauBytes, indexBytes))
+	f.Add(gltfOf(object{"buffers": array{object{"byteLength": 84, "uri": "beside.bin"}}}, cornerBytes, tauBytes,
+		indexBytes))
 	f.Add(gltfOf(object{"nodes": array{object{"children": []int{1}, "rotation": []float64{0, 0, 1, 1}},
-		object{"mesh": 0, "scale": []float64{1, -2, 1}}}, "scenes": array{object{"nodes": []int{0}}}}, cornerBytes, tauBytes, indexBytes))
+		object{"mesh": 0, "scale": []float64{1, -2, 1}}}, "scenes": array{object{"nodes": []int{0}}}}, cornerBytes,
+		tauBytes, indexBytes))
 	f.Fuzz(func(t *testing.T, data []byte) {
 		checkAny(t, append([]byte("{"), bytes.TrimPrefix(data, []byte("{"))...), format.Options{})
 	})

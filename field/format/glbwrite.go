@@ -12,13 +12,13 @@ import (
 )
 
 // WriteGLB writes the field as one GLB file: positions, _TAU, _P and _CP in single precision, triangles with 32-bit
-// indices, name and units in asset.extras, which tell whether _TAU is a stress or a coefficient. Single-precision numbers
-// survive a round trip to the last bit.
+// indices, name and units in asset.extras, which tell whether _TAU is a stress or a coefficient. Single-precision
+// numbers survive a round trip to the last bit.
 func WriteGLB(w io.Writer, f *field.Field) error { return WriteRawGLB(w, rawOf(f)) }
 
 // WriteRawGLB writes a run that was not yet built. Face values go to triangles with points of their own, which
-// asset.extras tells, so that reading gives face values again. Missing values stay NaN, so that they are holes again when
-// read here, though the format wants finite numbers.
+// asset.extras tells, so that reading gives face values again. Missing values stay NaN, so that they are holes again
+// when read here, though the format wants finite numbers.
 func WriteRawGLB(w io.Writer, raw field.Raw) error {
 	ownPoints := raw.FaceTau != nil
 	if ownPoints {
@@ -133,7 +133,8 @@ func (g *glbWriter) describe(ownPoints bool) error {
 	var accessors []glbAccessor
 	add := func(count, width, componentType, target int, typ string) int {
 		views = append(views, glbView{0, g.bytes, 4 * count * width, target})
-		accessors = append(accessors, glbAccessor{BufferView: len(views) - 1, ComponentType: componentType, Count: count, Type: typ})
+		accessors = append(accessors, glbAccessor{BufferView: len(views) - 1, ComponentType: componentType, Count: count,
+			Type: typ})
 		g.bytes += 4 * count * width
 		return len(accessors) - 1
 	}

@@ -163,8 +163,8 @@ func readGLB(name string, data []byte, opt Options) (field.Raw, error) {
 	return r.read(text)
 }
 
-// Bounds of the JSON before it is decoded: decoded objects take some hundred times the bytes of "{}", entries of maps ten
-// times and numbers of lists four times theirs. Real documents of one run have some hundred of each.
+// Bounds of the JSON before it is decoded: decoded objects take some hundred times the bytes of "{}", entries of maps
+// ten times and numbers of lists four times theirs. Real documents of one run have some hundred of each.
 const (
 	maxObjects = 200_000
 	maxKeys    = 500_000
@@ -176,7 +176,8 @@ func (r *gltfReader) read(text []byte) (field.Raw, error) {
 		return field.Raw{}, r.fail("JSON", "export the surface alone", "it has more than %d objects", maxObjects)
 	}
 	if bytes.Count(text, []byte{':'}) > maxKeys || bytes.Count(text, []byte{','}) > maxCommas {
-		return field.Raw{}, r.fail("JSON", "export the surface alone", "it has more than %d keys or %d commas", maxKeys, maxCommas)
+		return field.Raw{}, r.fail("JSON", "export the surface alone", "it has more than %d keys or %d commas", maxKeys,
+			maxCommas)
 	}
 	if err := json.Unmarshal(text, &r.doc); err != nil {
 		return field.Raw{}, r.fail("JSON", "export again", "%v", err)

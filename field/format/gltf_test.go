@@ -80,14 +80,16 @@ func readDoc(t *testing.T, what string, data []byte, opt format.Options) field.R
 
 func TestGLTFByDataURI(t *testing.T) {
 	raw := readDoc(t, "plain", gltfOf(nil, cornerBytes, tauBytes, indexBytes), format.Options{})
-	if len(raw.Points) != 3 || raw.Tau[2] != (r3.Vec{X: 5, Y: 6}) || raw.Tris[0] != [3]int32{0, 1, 2} || raw.Units.Tau != "Pa" {
+	if len(raw.Points) != 3 || raw.Tau[2] != (r3.Vec{X: 5, Y: 6}) || raw.Tris[0] != [3]int32{0, 1, 2} ||
+		raw.Units.Tau != "Pa" {
 		t.Errorf("%+v", raw)
 	}
 }
 
 // Sparse accessors replace elements, with and without a view below; normalised integers are fractions.
 func TestGLTFSparseAndNormalised(t *testing.T) {
-	sparse := object{"count": 1, "indices": object{"bufferView": 3, "componentType": 5121}, "values": object{"bufferView": 4}}
+	sparse := object{"count": 1, "indices": object{"bufferView": 3, "componentType": 5121},
+		"values": object{"bufferView": 4}}
 	accessors := func(tau object) array {
 		return array{
 			object{"bufferView": 0, "componentType": 5126, "count": 3, "type": "VEC3"}, tau,
@@ -167,7 +169,8 @@ func TestGLTFNodes(t *testing.T) {
 	raw := readDoc(t, "nodes", gltfOf(doc, cornerBytes, tauBytes, indexBytes), format.Options{})
 	want := []struct{ point, tau r3.Vec }{
 		{r3.Vec{Y: 1}, r3.Vec{X: -2, Y: 1}}, {r3.Vec{Y: 4}, r3.Vec{X: -4, Y: 3}}, {r3.Vec{X: -3, Y: 1}, r3.Vec{X: -6, Y: 5}},
-		{r3.Vec{Z: 5}, r3.Vec{X: -1, Y: 2}}, {r3.Vec{X: -2, Z: 5}, r3.Vec{X: -3, Y: 4}}, {r3.Vec{Y: 2, Z: 5}, r3.Vec{X: -5, Y: 6}},
+		{r3.Vec{Z: 5}, r3.Vec{X: -1, Y: 2}}, {r3.Vec{X: -2, Z: 5}, r3.Vec{X: -3, Y: 4}}, {r3.Vec{Y: 2, Z: 5}, r3.Vec{X: -5,
+			Y: 6}},
 	}
 	if len(raw.Points) != len(want) {
 		t.Fatalf("%d points", len(raw.Points))
@@ -208,21 +211,24 @@ func TestGLTFExternalBuffers(t *testing.T) {
 	if raw.Tau[2] != (r3.Vec{X: 5, Y: 6}) {
 		t.Errorf("tau %v", raw.Tau)
 	}
-	for _, uri := range []string{"../secret", "/secret", "data/../../secret", "%2e%2e/secret", "..%2fsecret", `..\secret`, "C:/secret",
+	for _, uri := range []string{"../secret", "/secret", "data/../../secret", "%2e%2e/secret", "..%2fsecret",
+		`..\secret`, "C:/secret",
 		"file:///secret", "http://host/secret", ".", "", "data", "missing.bin", "short.bin"} {
 		_, err := format.Read("x.gltf", doc(uri), format.Options{Files: files})
 		if err == nil || !strings.Contains(err.Error(), "buffer 0") {
 			t.Errorf("address %q: error %v", uri, err)
 		}
 	}
-	if _, err := format.Read("x.gltf", doc("secret"), format.Options{}); err == nil || !strings.Contains(err.Error(), "convert the run") {
+	if _, err := format.Read("x.gltf", doc("secret"), format.Options{}); err == nil || !strings.Contains(err.Error(),
+		"convert the run") {
 		t.Errorf("without a folder: %v", err)
 	}
 }
 
 // The file of the specification's own layout: magic, chunks, padding, bounds; found by hand, not by our reader.
 func TestGLBLayout(t *testing.T) {
-	raw := field.Raw{Name: "one", Points: []r3.Vec{{}, {X: 1}, {Y: 1}}, Tris: [][3]int32{{0, 1, 2}}, Tau: []r3.Vec{{X: 1}, {X: 1}, {X: 1}}}
+	raw := field.Raw{Name: "one", Points: []r3.Vec{{}, {X: 1}, {Y: 1}}, Tris: [][3]int32{{0, 1, 2}},
+		Tau: []r3.Vec{{X: 1}, {X: 1}, {X: 1}}}
 	var b bytes.Buffer
 	if err := format.WriteRawGLB(&b, raw); err != nil {
 		t.Fatal(err)
@@ -239,7 +245,8 @@ func TestGLBLayout(t *testing.T) {
 		t.Fatal(err)
 	}
 	for i, want := range []string{"map[bufferView:0 componentType:5126 count:3 max:[1 1 0] min:[0 0 0] type:VEC3]",
-		"map[bufferView:1 componentType:5126 count:3 type:VEC3]", "map[bufferView:2 componentType:5125 count:3 type:SCALAR]"} {
+		"map[bufferView:1 componentType:5126 count:3 type:VEC3]",
+		"map[bufferView:2 componentType:5125 count:3 type:SCALAR]"} {
 		if got := fmt.Sprint(doc["accessors"].(array)[i]); got != want {
 			t.Errorf("accessor %d is %s, want %s", i, got, want)
 		}
@@ -249,7 +256,8 @@ func TestGLBLayout(t *testing.T) {
 // Far from the origin single precision would be coarse: half a metre in a thousand kilometres.
 func TestGLBKeepsPositionsFarFromTheOrigin(t *testing.T) {
 	far := r3.Vec{X: 4.2e6, Y: 5.1e5, Z: 120}
-	raw := field.Raw{Points: []r3.Vec{far, far.Add(r3.Vec{X: 0.01}), far.Add(r3.Vec{Y: 0.01})}, Tris: [][3]int32{{0, 1, 2}},
+	raw := field.Raw{Points: []r3.Vec{far, far.Add(r3.Vec{X: 0.01}), far.Add(r3.Vec{Y: 0.01})}, Tris: [][3]int32{{0, 1,
+		2}},
 		Tau: make([]r3.Vec, 3), Units: field.Units{Length: "m", Tau: "1"}}
 	var b bytes.Buffer
 	if err := format.WriteRawGLB(&b, raw); err != nil {
@@ -281,10 +289,12 @@ func TestGLBKeepsFaceValues(t *testing.T) {
 		t.Fatal(err)
 	}
 	if len(again.Points) != len(raw.Points) || len(again.FaceTau) != len(raw.FaceTau) {
-		t.Fatalf("%d points, %d face values, want %d, %d", len(again.Points), len(again.FaceTau), len(raw.Points), len(raw.FaceTau))
+		t.Fatalf("%d points, %d face values, want %d, %d", len(again.Points), len(again.FaceTau), len(raw.Points),
+			len(raw.FaceTau))
 	}
 	for i, v := range again.FaceTau {
-		if w := raw.FaceTau[i]; float32(w.X) != float32(v.X) || float32(w.Y) != float32(v.Y) || float32(raw.FaceP[i]) != float32(again.FaceP[i]) {
+		if w := raw.FaceTau[i]; float32(w.X) != float32(v.X) || float32(w.Y) != float32(v.Y) ||
+			float32(raw.FaceP[i]) != float32(again.FaceP[i]) {
 			t.Fatalf("face %d: %v, want %v", i, v, w)
 		}
 	}

@@ -25,7 +25,8 @@ type accessor struct {
 // sparsePart replaces elements: value k stands at the element that index k names.
 type sparsePart struct{ index, value accessor }
 
-// accessor checks accessor i and returns it. Whatever its numbers say, all its elements lie within the bytes of its view.
+// accessor checks accessor i and returns it. Whatever its numbers say, all its elements lie within the bytes of its
+// view.
 func (r *gltfReader) accessor(i int, what string) (accessor, error) {
 	place := fmt.Sprintf("accessor %d (%s)", i, what)
 	bad := func(say string, args ...any) (accessor, error) {
@@ -114,7 +115,8 @@ func (r *gltfReader) readSparse(a *accessor, s *gltfSparse, place string) error 
 		return r.fail(place, "export again", "its sparse part does not fit its views")
 	}
 	part := &sparsePart{
-		index: accessor{data: indices[s.Indices.ByteOffset:], stride: isize, count: s.Count, width: 1, typ: s.Indices.ComponentType},
+		index: accessor{data: indices[s.Indices.ByteOffset:], stride: isize, count: s.Count, width: 1,
+			typ: s.Indices.ComponentType},
 		value: accessor{data: values[s.Values.ByteOffset:], stride: vsize, count: s.Count, width: a.width, typ: a.typ,
 			normalized: a.normalized},
 	}

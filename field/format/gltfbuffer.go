@@ -58,10 +58,12 @@ func (r *gltfReader) openBuffer(i int, b gltfBuffer, place string) ([]byte, erro
 func (r *gltfReader) openFile(uri string, length int, place string) ([]byte, error) {
 	name, err := url.PathUnescape(uri)
 	if err != nil || strings.ContainsAny(name, `\:`) || !fs.ValidPath(path.Clean(name)) || strings.HasPrefix(name, "/") {
-		return nil, r.fail(place, "put the file beside the document", "address %s leads out of the document's folder", quote(uri))
+		return nil, r.fail(place, "put the file beside the document", "address %s leads out of the document's folder",
+			quote(uri))
 	}
 	if r.opt.Files == nil {
-		return nil, r.fail(place, "convert the run to GLB, which is one file", "it is in another file, %s, which cannot be read here",
+		return nil, r.fail(place, "convert the run to GLB, which is one file",
+			"it is in another file, %s, which cannot be read here",
 			quote(name))
 	}
 	f, err := r.opt.Files.Open(path.Clean(name))
@@ -78,7 +80,8 @@ func (r *gltfReader) openFile(uri string, length int, place string) ([]byte, err
 		return nil, r.fail(place, "put the file beside the document", "%s is not a file", quote(name))
 	}
 	if length < 0 || int64(length) > info.Size() || length > maxUnpacked {
-		return nil, r.fail(place, "copy the files again", "%s has %d bytes, the document says %d", quote(name), info.Size(), length)
+		return nil, r.fail(place, "copy the files again", "%s has %d bytes, the document says %d", quote(name), info.Size(),
+			length)
 	}
 	data := make([]byte, length)
 	if _, err := io.ReadFull(f, data); err != nil {

@@ -3,14 +3,12 @@ package format
 import (
 	"math"
 	"slices"
-	"strings"
 
-	"shearprint/field"
 	"shearprint/field/r3"
 )
 
-// attributes are the accessors of a primitive that matter; -1 where there is none. tau is one vector attribute, or three
-// scalar ones.
+// attributes are the accessors of a primitive that matter; -1 where there is none. tau is one vector attribute, or
+// three scalar ones.
 type attributes struct {
 	position int
 	tau      [3]int
@@ -229,7 +227,8 @@ func (r *gltfReader) addTau(p placed, at attributes, tau []r3.Vec) error {
 			return err
 		}
 		if a[k].count != len(tau) || at.vector && a[k].width != 3 || !at.vector && a[k].width != 1 {
-			return r.fail(p.place, "export again", "tau has %d elements of %d components for %d points", a[k].count, a[k].width, len(tau))
+			return r.fail(p.place, "export again", "tau has %d elements of %d components for %d points", a[k].count,
+				a[k].width, len(tau))
 		}
 	}
 	readVectors(tau, a, at.vector)
@@ -259,67 +258,9 @@ func (r *gltfReader) addScalar(p placed, index int, what string, x []float64, n 
 		return nil, err
 	}
 	if a.count != n || a.width != 1 {
-		return nil, r.fail(p.place, "export again", "%s has %d elements of %d components for %d points", what, a.count, a.width, n)
+		return nil, r.fail(p.place, "export again", "%s has %d elements of %d components for %d points", what, a.count,
+			a.width, n)
 	}
 	a.column(0, func(i int, v float64) { x[base+i] = v })
 	return x, nil
-}
-
-// finish makes the run: name, units, findings.
-func (r *gltfReader) finish() (field.Raw, error) {
-	raw := &r.raw
-	if len(raw.Tris) == 0 {
-		return *raw, r.fail("meshes", "export triangles", "there is not one triangle")
-	}
-	if r.skipped > 0 {
-		note(raw, field.Note, "skipped-primitives", r.skipped, "", "%d primitives of points or lines were left out", r.skipped)
-	}
-	if r.bare > 0 {
-		note(raw, field.Doubtful, "bare-primitives", r.bare, "", "%d primitives have no tau and were left out", r.bare)
-	}
-	if len(r.mapped) > 0 {
-		note(raw, field.Note, "matched-names", len(r.mapped), "", "names were matched: %s", strings.Join(r.mapped, "; "))
-	}
-	if r.own == nil {
-		applyUnits(raw, "", "", "", r.coef, r.plain)
-		if raw.P != nil && r.pPlain {
-			raw.Units.P = "Pa"
-		}
-		return *raw, nil
-	}
-	raw.Name = oneLine(r.own.Name)
-	known := func(s *string) string {
-		if s == nil {
-			return ""
-		}
-		return *s
-	}
-	applyUnits(raw, known(r.own.Length), known(r.own.Tau), known(r.own.P), known(r.own.Tau) == "1", false)
-	if r.own.Values == "face" {
-		return *raw, r.valuesToFaces()
-	}
-	return *raw, nil
-}
-
-// valuesToFaces turns the points' values into those of the triangles, for files that WriteRawGLB made from face values.
-func (r *gltfReader) valuesToFaces() error {
-	raw := &r.raw
-	if len(raw.Points) != 3*len(raw.Tris) {
-		return r.fail("asset.extras", "export again", "it promises face values, but triangles share their points")
-	}
-	raw.FaceTau = perFace(raw, raw.Tau)
-	raw.FaceP, raw.FaceCp = perFace(raw, raw.P), perFace(raw, raw.Cp)
-	raw.Tau, raw.P, raw.Cp = nil, nil, nil
-	return nil
-}
-
-func perFace[T any](raw *field.Raw, x []T) []T {
-	if x == nil {
-		return nil
-	}
-	out := make([]T, len(raw.Tris))
-	for t, tri := range raw.Tris {
-		out[t] = x[tri[0]]
-	}
-	return out
 }

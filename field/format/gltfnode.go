@@ -124,7 +124,8 @@ func (r *gltfReader) visit(i int, above pose, depth int) error {
 func (r *gltfReader) place(node, m int, p pose) error {
 	mesh := &r.doc.Meshes[m]
 	if len(r.places)+len(mesh.Primitives) > maxObjects {
-		return r.fail(fmt.Sprintf("mesh %d", m), "export each mesh once", "repeated meshes make more than %d primitives", maxObjects)
+		return r.fail(fmt.Sprintf("mesh %d", m), "export each mesh once", "repeated meshes make more than %d primitives",
+			maxObjects)
 	}
 	for k := range mesh.Primitives {
 		where := fmt.Sprintf("mesh %d primitive %d", m, k)

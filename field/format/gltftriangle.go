@@ -28,7 +28,8 @@ func (r *gltfReader) addTriangles(p placed, base, end int) error {
 	if mode == 4 && n%3 != 0 {
 		return r.fail(p.place, "export again", "%d corners make no whole number of triangles", n)
 	}
-	if mode == 4 && p.prim.Indices != nil && index.typ == 5125 && index.data != nil && index.sparse == nil && p.m.det() > 0 {
+	if mode == 4 && p.prim.Indices != nil && index.typ == 5125 && index.data != nil && index.sparse == nil &&
+		p.m.det() > 0 {
 		return r.plainTriangles(&index, p, base, end-base)
 	}
 	corner, err := r.corners(index, p, base, n, end-base)

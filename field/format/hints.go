@@ -65,8 +65,9 @@ func numbersAfter(s, word string, n int) ([]float64, bool) {
 
 // Agreement of a table with the values that its surface carries itself.
 const (
-	sameField = 0.8  // correlation from which both are one field up to a factor
-	sameScale = 0.05 // relative difference of a factor from 1 or from the density; vertex means of face values differ by 0.3 %
+	sameField = 0.8 // correlation from which both are one field up to a factor
+	// relative difference of a factor from 1 or from the density; vertex means of face values differ by 0.3 %
+	sameScale = 0.05
 )
 
 // compare holds tau and p of a matched table against those that the surface file carries itself, and tells sign and
@@ -89,12 +90,14 @@ func compare(raw, surface *field.Raw, h hints) {
 	}
 	corr := xy / math.Sqrt(float64(xx*yy))
 	if !(math.Abs(corr) > sameField) {
-		note(raw, field.Doubtful, "other-field", 0, "", "the surface file has tau of its own, of which the table's is another "+
-			"(correlation %.2f); the table's is used", corr)
+		note(raw, field.Doubtful, "other-field", 0, "",
+			"the surface file has tau of its own, of which the table's is another "+
+				"(correlation %.2f); the table's is used", corr)
 		return
 	}
 	if corr < 0 {
-		note(raw, field.Doubtful, "opposite-surface", 0, "", "tau is opposite to the one in the surface file: --flip turns it")
+		note(raw, field.Doubtful, "opposite-surface", 0, "",
+			"tau is opposite to the one in the surface file: --flip turns it")
 	}
 	scale := math.Abs(yy / xy)
 	offOne, offDensity := math.Abs(scale-1), math.Inf(1)
@@ -103,14 +106,16 @@ func compare(raw, surface *field.Raw, h hints) {
 	}
 	switch {
 	case math.Min(offOne, offDensity) > sameScale:
-		note(raw, field.Doubtful, "scaled-tau", 0, "", "tau in the surface file is %.4g times larger; the table's numbers are kept", scale)
+		note(raw, field.Doubtful, "scaled-tau", 0, "",
+			"tau in the surface file is %.4g times larger; the table's numbers are kept", scale)
 	case offDensity < offOne:
 		raw.Units.Tau = "m2/s2"
 		if raw.P != nil || raw.FaceP != nil {
 			raw.Units.P = "m2/s2"
 		}
 		raw.Findings = slices.DeleteFunc(raw.Findings, func(f field.Finding) bool { return f.Code == "assumed-tau-unit" })
-		note(raw, field.Doubtful, "kinematic-tau", 0, "", "tau is kinematic (m2/s2): the one in the surface file is %.4g times larger, and "+
-			"the density is %g kg/m3; the table's numbers are kept, multiply by the density for Pa", scale, h.density)
+		note(raw, field.Doubtful, "kinematic-tau", 0, "",
+			"tau is kinematic (m2/s2): the one in the surface file is %.4g times larger, and "+
+				"the density is %g kg/m3; the table's numbers are kept, multiply by the density for Pa", scale, h.density)
 	}
 }

@@ -5,8 +5,8 @@ import (
 	"math/bits"
 )
 
-// inCircle tells whether v lies within the circle through a, b, c, which run counter-clockwise. The determinant is first
-// taken in floating point; where its error could hide the sign, in whole numbers of 128 bits.
+// inCircle tells whether v lies within the circle through a, b, c, which run counter-clockwise. The determinant is
+// first taken in floating point; where its error could hide the sign, in whole numbers of 128 bits.
 func (d *divided) inCircle(a, b, c, v int32) bool {
 	o := d.p[v]
 	from := func(p gridPoint) (x, y int64) { return int64(p.x - o.x), int64(p.y - o.y) }

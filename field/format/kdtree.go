@@ -8,8 +8,8 @@ import (
 	"shearprint/field/r3"
 )
 
-// kdTree finds nearest points. The points stand in order so that the middle of every range splits it along one axis; the
-// ranges end in leaves.
+// kdTree finds nearest points. The points stand in order so that the middle of every range splits it along one axis;
+// the ranges end in leaves.
 type kdTree struct {
 	points []r3.Vec
 	order  []int32
@@ -115,8 +115,8 @@ func (t *kdTree) selectNth(from, to, n int, axis uint8) {
 	slices.SortFunc(o[from:to], func(i, j int32) int { return t.less(i, j, axis) })
 }
 
-// nearest returns the point nearest to p and its distance; -1 and infinity if there is none. Of equally near points, one
-// is taken that depends on the points alone.
+// nearest returns the point nearest to p and its distance; -1 and infinity if there is none. Of equally near points,
+// one is taken that depends on the points alone.
 func (t *kdTree) nearest(p r3.Vec) (best int32, dist float64) {
 	q := kdQuery{t: t, p: p, best: -1, least: math.Inf(1)}
 	q.visit(0, len(t.order))

@@ -12,25 +12,32 @@ import (
 // Read reads the file in its own unit and as its own connectivity has it. The kind is told from the content; a gzipped
 // file is unpacked. Values without triangles are matched to opt.Surface. The error is a *SyntaxError.
 func Read(name string, data []byte, opt Options) (field.Raw, error) {
-	raw, _, err := readRun(name, data, opt)
+	raw, _, err := readRun(name, data, &opt)
 	return raw, err
 }
 
-// readRun also returns what the file and its surface say about the flow.
-func readRun(name string, data []byte, opt Options) (field.Raw, hints, error) {
+// readRun also returns what the file and its surface say about the flow. It clears the unit in opt where it was used up:
+// a matched run has the surface's positions.
+func readRun(name string, data []byte, opt *Options) (field.Raw, hints, error) {
 	data, err := unpack(name, data)
 	if err != nil {
 		return field.Raw{}, hints{}, err
 	}
-	raw, err := read(name, data, opt)
+	raw, err := read(name, data, *opt)
 	if err != nil {
 		return field.Raw{}, hints{}, err
 	}
 	h := hintsOf(data)
-	if opt.Surface != nil {
-		if h, err = attach(source{name}, &raw, h, opt); err != nil {
+	switch {
+	case opt.Surface == nil:
+	case len(raw.Tris) > 0:
+		note(&raw, field.Note, "surface-unused", 0, "", "the run has triangles of its own; the surface %s was not used",
+			opt.SurfaceName)
+	default:
+		if h, err = attach(source{name}, &raw, h, *opt); err != nil {
 			return field.Raw{}, hints{}, err
 		}
+		opt.Unit = ""
 	}
 	if raw.Name == "" {
 		raw.Name = shortName(name)
@@ -38,10 +45,10 @@ func readRun(name string, data []byte, opt Options) (field.Raw, hints, error) {
 	return raw, h, nil
 }
 
-// Prepare reads the file and does all that comes before repair: mirroring, units, welding, sign. Its result can be built
-// or, without loss at sharp edges, written.
+// Prepare reads the file and does all that comes before repair: mirroring, units, welding, sign. Its result can be
+// built or, without loss at sharp edges, written.
 func Prepare(name string, data []byte, opt Options) (field.Raw, error) {
-	raw, h, err := readRun(name, data, opt)
+	raw, h, err := readRun(name, data, &opt)
 	if err != nil {
 		return field.Raw{}, err
 	}
@@ -52,9 +59,6 @@ func Prepare(name string, data []byte, opt Options) (field.Raw, error) {
 			"there is no wall shear stress in it")
 	case len(raw.Tris) == 0:
 		return field.Raw{}, src.fail("", "give the geometry with --surface", "there are no triangles in it")
-	}
-	if opt.Surface != nil {
-		opt.Unit = "" // the positions are the surface's, whose unit attach has told
 	}
 	for _, step := range []func(source, *field.Raw, Options) error{mirror, toMetres, weld, flip, normalContent} {
 		if err := step(src, &raw, opt); err != nil {

@@ -39,7 +39,8 @@ func checkBad(t *testing.T, list []bad) {
 		switch {
 		case err == nil:
 			t.Errorf("%s: no error", b.name)
-		case !errors.As(err, &se), !strings.HasPrefix(err.Error(), "bad.file: "), strings.ContainsAny(err.Error(), "\r\n\x00"):
+		case !errors.As(err, &se), !strings.HasPrefix(err.Error(), "bad.file: "), strings.ContainsAny(err.Error(),
+			"\r\n\x00"):
 			t.Errorf("%s: not one line with the name: %q", b.name, err)
 		case !strings.Contains(err.Error(), b.want):
 			t.Errorf("%s: %q, want %q in it", b.name, err, b.want)
@@ -86,7 +87,8 @@ func TestMalformedPLY(t *testing.T) {
 		{"twice", ascii + "element vertex 1\nproperty float x\nproperty float x\nend_header\n", "twice"},
 		{"no vertices", ascii + face + "end_header\n3 0 1 2\n", "vertex"},
 		{"no z", ascii + "element vertex 1\nproperty float x\nproperty float y\nend_header\n0 0\n", "x y z"},
-		{"list in vertices", ascii + "element vertex 1\n" + xyz + "property list uchar int near\nend_header\n0 0 0 0\n", "list"},
+		{"list in vertices", ascii + "element vertex 1\n" + xyz + "property list uchar int near\nend_header\n0 0 0 0\n",
+			"list"},
 		{"word for a number", head(ascii, "3") + "0 0 0 1 0 0\n1 0 zero 1 0 0\n0 1 0 1 0 0\n3 0 1 2\n", "line 14"},
 		{"too few rows", head(ascii, "3") + "0 0 0 1 0 0\n1 0 0 1 0 0\n3 0 1 2\n", "cannot hold"},
 		{"a row too few", head(ascii, "3") + "0.000 0.000 0.000 1 0 0\n1.000 0 0 1 0 0\n3 0 1 2\n", "too early"},
@@ -102,8 +104,10 @@ func TestMalformedPLY(t *testing.T) {
 		{"binary cut", head(bin, "3") + floats[:50], "cannot hold"},
 		{"binary faces missing", head(bin, "3") + floats, "cannot hold"},
 		{"no faces", ascii + "element vertex 3\n" + xyz + tau + "end_header\n" + rows, "no triangles"},
-		{"no tau", ascii + "element vertex 3\n" + xyz + face + "end_header\n0 0 0\n1 0 0\n0 1 0\n3 0 1 2\n", "no wall shear stress"},
-		{"all NaN", head(ascii, "3") + strings.ReplaceAll(rows, "1 0 0\n", "nan nan nan\n") + "3 0 1 2\n", "no usable triangle"},
+		{"no tau", ascii + "element vertex 3\n" + xyz + face + "end_header\n0 0 0\n1 0 0\n0 1 0\n3 0 1 2\n",
+			"no wall shear stress"},
+		{"all NaN", head(ascii, "3") + strings.ReplaceAll(rows, "1 0 0\n", "nan nan nan\n") + "3 0 1 2\n",
+			"no usable triangle"},
 		{"one place", head(ascii, "3") + "0 0 0 1 0 0\n0 0 0 1 0 0\n0 0 0 1 0 0\n3 0 1 2\n", "no usable triangle"},
 		{"huge coordinate", head(ascii, "3") + "1e300 0 0 1 0 0\n1 0 0 1 0 0\n0 1 0 1 0 0\n3 0 1 2\n", "beyond"},
 		{"huge tau", head(ascii, "3") + "0 0 0 1e300 0 0\n1 0 0 1 0 0\n0 1 0 1 0 0\n3 0 1 2\n", "beyond"},
@@ -142,7 +146,8 @@ func TestMalformedGLTF(t *testing.T) {
 		{"scene", doc(object{"scene": 3, "scenes": array{object{}}}), "scene 3"},
 		{"empty scene", doc(object{"scenes": array{object{}}}), "triangle"},
 		{"node beyond", doc(object{"scenes": array{object{"nodes": array{7}}}}), "node 7"},
-		{"cycle", doc(object{"nodes": array{object{"children": array{0}}}, "scenes": array{object{"nodes": array{0}}}}), "twice"},
+		{"cycle", doc(object{"nodes": array{object{"children": array{0}}}, "scenes": array{object{"nodes": array{0}}}}),
+			"twice"},
 		{"mesh beyond", node(object{"mesh": 2}), "mesh 2"},
 		{"skin", node(object{"mesh": 0, "skin": 0}), "skin"},
 		{"short matrix", node(object{"mesh": 0, "matrix": array{1, 2, 3}}), "16"},
@@ -186,7 +191,8 @@ func TestMalformedGLTF(t *testing.T) {
 		{"no bytes", doc(object{"buffers": array{object{"byteLength": 84}}}), "neither"},
 		{"data not base64", doc(object{"buffers": array{object{"byteLength": 84, "uri": "data:,abc"}}}), "base64"},
 		{"data broken", doc(object{"buffers": array{object{"byteLength": 84, "uri": "data:;base64,a*b"}}}), "data address"},
-		{"buffer too short", doc(object{"buffers": array{object{"byteLength": 1000, "uri": "data:;base64,AAAA"}}}), "1000 bytes"},
+		{"buffer too short", doc(object{"buffers": array{object{"byteLength": 1000, "uri": "data:;base64,AAAA"}}}),
+			"1000 bytes"},
 		{"file missing", doc(object{"buffers": array{object{"byteLength": 84, "uri": "gone.bin"}}}), "gone.bin"},
 		{"GLB too short", "glTF\x02\x00\x00\x00", "at least"},
 		{"GLB version", "glTF" + string(bytesOf([4]uint32{1, 24, 4, 0x4e4f534a})) + "{}  ", "version 1"},
@@ -290,7 +296,8 @@ func TestBadSurfaces(t *testing.T) {
 			t.Errorf("%s: %v", name, err)
 		}
 	}
-	_, err := format.Load("t.csv", table, format.Options{Surface: stlOf(mirroredAway(sphereRaw(200))), SurfaceName: "s.stl"})
+	_, err := format.Load("t.csv", table, format.Options{Surface: stlOf(mirroredAway(sphereRaw(200))),
+		SurfaceName: "s.stl"})
 	if err == nil || !strings.Contains(err.Error(), "one frame") {
 		t.Errorf("a surface elsewhere: %v", err)
 	}
@@ -322,8 +329,10 @@ func TestGzipBombs(t *testing.T) {
 		data []byte
 		want string
 	}{
-		"bomb": {bomb, "more than"}, "lie": {lie, "more than"}, "twice": {pack(good), "twice"}, "cut": {good[:len(good)/2], "unpacking stops"},
-		"header": {good[:5], "damaged"}, "checksum": {append(bytes.Clone(good[:len(good)-5]), 0, 0, 0, 0, 0), ""}, "empty": {pack(nil), "empty"},
+		"bomb": {bomb, "more than"}, "lie": {lie, "more than"}, "twice": {pack(good), "twice"}, "cut": {good[:len(good)/2],
+			"unpacking stops"},
+		"header": {good[:5], "damaged"}, "checksum": {append(bytes.Clone(good[:len(good)-5]), 0, 0, 0, 0, 0), ""},
+		"empty": {pack(nil), "empty"},
 	} {
 		var before, after runtime.MemStats
 		runtime.ReadMemStats(&before)

@@ -26,10 +26,6 @@ func attach(src source, raw *field.Raw, h hints, opt Options) (hints, error) {
 		return h, err
 	}
 	h = h.or(told)
-	if len(raw.Tris) > 0 {
-		note(raw, field.Note, "surface-unused", 0, "", "the run has triangles of its own; the surface %s was not used", opt.SurfaceName)
-		return h, nil
-	}
 	if len(raw.Points) == 0 {
 		return h, src.fail("", "check the export", "there are no values to match to the surface")
 	}
@@ -44,20 +40,23 @@ func attach(src source, raw *field.Raw, h hints, opt Options) (hints, error) {
 	}
 	m := matchRows(raw.Points, targets)
 	if m.matched == 0 || float64(m.matched) < leastMatch*float64(len(targets.place)) {
-		return h, src.fail("", misfit(raw.Points, surface.Points), "only %d of the %d %s of the surface %s have a row of the table near them",
+		return h, src.fail("", misfit(raw.Points, surface.Points),
+			"only %d of the %d %s of the surface %s have a row of the table near them",
 			m.matched, len(targets.place), what, opt.SurfaceName)
 	}
 	fit := medianOf(m.distances)
 	scatter(raw, &surface, m.row, what == "faces")
-	note(raw, field.Note, "matched-surface", m.matched, "", "%d of %d rows were matched to the %s of %s; the median distance is %.2g "+
-		"of the local size, the largest %.2g", m.used, len(m.rowUsed), what, opt.SurfaceName, fit, slices.Max(m.distances))
+	note(raw, field.Note, "matched-surface", m.matched, "",
+		"%d of %d rows were matched to the %s of %s; the median distance is %.2g "+
+			"of the local size, the largest %.2g", m.used, len(m.rowUsed), what, opt.SurfaceName, fit, slices.Max(m.distances))
 	if holes := len(targets.place) - m.matched; holes > 0 {
 		note(raw, field.Doubtful, "unmatched-surface", holes, pointPlace(targets.place[m.firstHole]),
 			"%d of the %d %s of the surface have no row of the table and are holes", holes, len(targets.place), what)
 	}
 	if left := len(m.rowUsed) - m.used; left > 0 {
-		note(raw, field.Doubtful, "unmatched-rows", left, "", "%d rows of the table are not near the surface, or not the nearest to "+
-			"their place on it, and were left out", left)
+		note(raw, field.Doubtful, "unmatched-rows", left, "",
+			"%d rows of the table are not near the surface, or not the nearest to "+
+				"their place on it, and were left out", left)
 	}
 	compare(raw, &surface, h)
 	return h, nil
@@ -84,7 +83,8 @@ func readSurface(opt Options) (field.Raw, hints, error) {
 	for t, tri := range s.Tris {
 		for _, v := range tri {
 			if v < 0 || int(v) >= len(s.Points) {
-				return s, hints{}, src.fail(fmt.Sprintf("triangle %d", t), "export again", "it names point %d of %d", v, len(s.Points))
+				return s, hints{}, src.fail(fmt.Sprintf("triangle %d", t), "export again", "it names point %d of %d", v,
+					len(s.Points))
 			}
 		}
 	}
@@ -113,103 +113,11 @@ func sameUnit(src source, raw, surface *field.Raw, opt Options) error {
 		for i, p := range raw.Points {
 			raw.Points[i] = p.Scale(factor)
 		}
-		note(raw, field.Note, "converted-units", 0, "", "positions of the table were converted from %s to the surface's %s", own,
+		note(raw, field.Note, "converted-units", 0, "", "positions of the table were converted from %s to the surface's %s",
+			own,
 			surface.Units.Length)
 	}
 	return nil
-}
-
-// targets are the elements of a surface that values can belong to: their places and the local size at each.
-type targets struct {
-	place []r3.Vec
-	size  []float64
-	tree  *kdTree
-}
-
-func vertexTargets(s *field.Raw) targets {
-	t := targets{place: s.Points, size: make([]float64, len(s.Points))}
-	count := make([]int32, len(s.Points))
-	for _, tri := range s.Tris {
-		for k := range 3 {
-			a, b := tri[k], tri[(k+1)%3]
-			d := s.Points[b].Sub(s.Points[a]).Norm()
-			for _, v := range [2]int32{a, b} {
-				t.size[v] += d
-				count[v]++
-			}
-		}
-	}
-	for v, n := range count {
-		if n > 0 {
-			t.size[v] /= float64(n)
-		}
-	}
-	t.tree = newKDTree(t.place)
-	return t
-}
-
-// faceTargets are the file's polygons: the centroid of their triangles, as solvers' face centres are.
-func faceTargets(s *field.Raw) targets {
-	n := faceCount(s)
-	t := targets{place: make([]r3.Vec, n), size: make([]float64, n)}
-	corner := make([]r3.Vec, n) // a corner of each, for faces without area
-	for i, tri := range s.Tris {
-		f := faceOf(s, i)
-		c := r3.Tri{s.Points[tri[0]], s.Points[tri[1]], s.Points[tri[2]]}
-		area := c.Area()
-		t.place[f] = t.place[f].AddScaled(area, c.At([3]float64{1. / 3, 1. / 3, 1. / 3}))
-		t.size[f] += area
-		corner[f] = c[0]
-	}
-	for f, area := range t.size {
-		if area > 0 {
-			t.place[f] = t.place[f].Scale(1 / area)
-			t.size[f] = math.Sqrt(area)
-		} else {
-			t.place[f] = corner[f]
-		}
-	}
-	t.tree = newKDTree(t.place)
-	return t
-}
-
-func faceCount(s *field.Raw) int {
-	if s.Face == nil {
-		return len(s.Tris)
-	}
-	return int(s.Face[len(s.Face)-1]) + 1
-}
-
-func faceOf(s *field.Raw, t int) int {
-	if s.Face == nil {
-		return t
-	}
-	return int(s.Face[t])
-}
-
-// typicalDistance returns the median distance of some rows from their nearest target, over the local size.
-func typicalDistance(rows []r3.Vec, t *targets) float64 {
-	const sample = 500
-	step := max(1, len(rows)/sample)
-	var d []float64
-	for i := 0; i < len(rows); i += step {
-		k, dist := t.tree.nearest(rows[i])
-		d = append(d, t.relative(k, dist))
-	}
-	return medianOf(d)
-}
-
-func (t *targets) relative(k int32, dist float64) float64 {
-	if dist == 0 {
-		return 0
-	}
-	return dist / t.size[k]
-}
-
-func medianOf(x []float64) float64 {
-	y := slices.Clone(x)
-	slices.Sort(y)
-	return y[len(y)/2]
 }
 
 // matching says which row each target takes.
@@ -222,8 +130,8 @@ type matching struct {
 	distances []float64 // of the matched, relative to the local size
 }
 
-// matchRows gives each row to its nearest target within matchWithin, and each target the nearest of its rows; of equally
-// near rows the first.
+// matchRows gives each row to its nearest target within matchWithin, and each target the nearest of its rows; of
+// equally near rows the first.
 func matchRows(rows []r3.Vec, t *targets) matching {
 	m := matching{row: make([]int32, len(t.place)), rowUsed: make([]bool, len(rows)), firstHole: -1}
 	best := make([]float64, len(t.place))
@@ -298,23 +206,4 @@ func scatter(raw, surface *field.Raw, row []int32, faces bool) {
 	} else {
 		raw.Tau, raw.P, raw.Cp = vectors(tau), numbers(p), numbers(cp)
 	}
-}
-
-// misfit looks for the usual reason why a table does not fit a surface, and words the remedy.
-func misfit(rows, surface []r3.Vec) string {
-	a, b := boxOf(rows).Diagonal(), boxOf(surface).Diagonal()
-	for _, u := range []struct {
-		factor float64
-		say    string
-	}{
-		{1000, "the table looks 1000 times larger, as millimetres against metres: give --unit, or bring both to one unit"},
-		{1e-3, "the table looks 1000 times smaller, as metres against millimetres: give --unit, or bring both to one unit"},
-		{1 / 0.0254, "the table looks 39.37 times larger, as inches against metres: give --unit, or bring both to one unit"},
-		{0.0254, "the table looks 39.37 times smaller, as metres against inches: give --unit, or bring both to one unit"},
-	} {
-		if r := a / b / u.factor; r > 0.9 && r < 1.1 {
-			return u.say
-		}
-	}
-	return "check that both are of one run and in one frame"
 }

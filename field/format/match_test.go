@@ -14,7 +14,8 @@ import (
 	"shearprint/field/r3"
 )
 
-// sphereRaw is a sphere in uniform creeping flow along x (exact: tau along the projected stream, p falling with x), in SI.
+// sphereRaw is a sphere in uniform creeping flow along x (exact: tau along the projected stream, p falling with x),
+// in SI.
 func sphereRaw(triangles int) field.Raw {
 	raw := exact.Sphere(1, triangles)
 	raw.Name = "sphere"

@@ -9,8 +9,8 @@ import (
 	"shearprint/field/r3"
 )
 
-// onPlaneFraction of the size: points nearer to the mirror plane lie on it. Exports in single precision put points of the
-// plane off it by 1e-7 of the coordinates.
+// onPlaneFraction of the size: points nearer to the mirror plane lie on it. Exports in single precision put points of
+// the plane off it by 1e-7 of the coordinates.
 const onPlaneFraction = 1e-6
 
 // mirror completes a half model: the points are reflected, the vectors with them, and the points on the plane are one
@@ -33,8 +33,9 @@ func mirror(src source, raw *field.Raw, opt Options) error {
 	}
 	m.dropFlat(raw)
 	m.complete(raw)
-	note(raw, field.Note, "mirrored", len(m.seam), "", "the run was completed at %c = %g; %d points on the plane are one with their "+
-		"images", "xyz"[axis], value, len(m.seam))
+	note(raw, field.Note, "mirrored", len(m.seam), "",
+		"the run was completed at %c = %g; %d points on the plane are one with their "+
+			"images", "xyz"[axis], value, len(m.seam))
 	return nil
 }
 
@@ -91,8 +92,9 @@ func (m *mirroring) findSeam(src source, raw *field.Raw, tol float64) error {
 	}
 	axis := "xyz"[m.axis]
 	if sides[0] > 0 && sides[1] > 0 {
-		return src.fail("", "give the plane where the half model ends, as --mirror y=VALUE", "the run lies on both sides of %c = %g: "+
-			"%d and %d points", axis, m.value, sides[0], sides[1])
+		return src.fail("", "give the plane where the half model ends, as --mirror y=VALUE",
+			"the run lies on both sides of %c = %g: "+
+				"%d and %d points", axis, m.value, sides[0], sides[1])
 	}
 	if len(m.seam) < 2 {
 		return src.fail("", "give the plane where the half model ends, as --mirror y=VALUE",
@@ -116,7 +118,8 @@ func (m *mirroring) dropFlat(raw *field.Raw) {
 	if n == len(raw.Tris) {
 		return
 	}
-	note(raw, field.Repaired, "dropped-symmetry-plane", len(raw.Tris)-n, "", "%d triangles lay in the mirror plane and were dropped",
+	note(raw, field.Repaired, "dropped-symmetry-plane", len(raw.Tris)-n, "",
+		"%d triangles lay in the mirror plane and were dropped",
 		len(raw.Tris)-n)
 	cutFaces(raw, n)
 }

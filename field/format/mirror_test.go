@@ -66,7 +66,8 @@ func plyOf(t testing.TB, raw field.Raw) []byte {
 	return b.Bytes()
 }
 
-// A half becomes a closed body with the flow of the whole: vectors reflected, points on the plane one with their images.
+// A half becomes a closed body with the flow of the whole: vectors reflected, points on the plane one with their
+// images.
 func TestMirrorCompletesAHalf(t *testing.T) {
 	for _, c := range []struct {
 		name    string
@@ -74,7 +75,8 @@ func TestMirrorCompletesAHalf(t *testing.T) {
 		dust    float64
 		opt     string
 		asFaces bool
-	}{{"y", 0, 0, "y", false}, {"moved", 2.5, 0, "y=2.5", false}, {"dust", 0, 1e-7, "y", false}, {"faces", 0, 0, "Y = 0", true}} {
+	}{{"y", 0, 0, "y", false}, {"moved", 2.5, 0, "y=2.5", false}, {"dust", 0, 1e-7, "y", false}, {"faces", 0, 0, "Y = 0",
+		true}} {
 		raw := halfSphere(c.at, c.dust)
 		if c.asFaces {
 			for _, tri := range raw.Tris {
@@ -87,8 +89,10 @@ func TestMirrorCompletesAHalf(t *testing.T) {
 			t.Fatalf("%s: the half has chi %d", c.name, half.Euler())
 		}
 		f := load(t, "half.ply", plyOf(t, raw), format.Options{Mirror: c.opt})
-		if f.Euler() != 2 || len(f.Rims) != 0 || len(f.Tris) != 2*len(half.Tris) || len(f.Points) != 2*len(half.Points)-len(half.Rims[0].Edges) {
-			t.Errorf("%s: chi %d, %d rims, %d triangles of %d, %d points of %d", c.name, f.Euler(), len(f.Rims), len(f.Tris), len(half.Tris),
+		if f.Euler() != 2 || len(f.Rims) != 0 || len(f.Tris) != 2*len(half.Tris) ||
+			len(f.Points) != 2*len(half.Points)-len(half.Rims[0].Edges) {
+			t.Errorf("%s: chi %d, %d rims, %d triangles of %d, %d points of %d", c.name, f.Euler(), len(f.Rims), len(f.Tris),
+				len(half.Tris),
 				len(f.Points), len(half.Points))
 		}
 		if c.asFaces {
@@ -123,10 +127,12 @@ func TestMirrorDropsFacesInThePlane(t *testing.T) {
 func TestMirrorRefusals(t *testing.T) {
 	data := plyOf(t, halfSphere(0, 0))
 	for opt, want := range map[string]string{
-		"x": "both sides", "y=-0.5": "does not reach the plane", "y=0.5": "both sides", "w": "no plane", "y=": "no plane", "=1": "no plane",
+		"x": "both sides", "y=-0.5": "does not reach the plane", "y=0.5": "both sides", "w": "no plane", "y=": "no plane",
+		"=1":    "no plane",
 		"y=NaN": "no plane", "yz": "no plane", "y=1e999": "no plane",
 	} {
-		if _, err := format.Load("half.ply", data, format.Options{Mirror: opt}); err == nil || !strings.Contains(err.Error(), want) {
+		if _, err := format.Load("half.ply", data, format.Options{Mirror: opt}); err == nil ||
+			!strings.Contains(err.Error(), want) {
 			t.Errorf("--mirror %s: %v, want %q", opt, err, want)
 		}
 	}
@@ -156,7 +162,8 @@ func TestWelding(t *testing.T) {
 		!hasFinding(f.Findings, "welded-values-differ", 1) {
 		t.Errorf("%d points of %d, chi %d, %+v", len(f.Points), n, f.Euler(), f.Findings)
 	}
-	for _, p := range []r3.Vec{{X: 1e8}, {X: 1e8, Y: 1}, {X: 1e8, Z: 1}} { // coarse weld distance: the far points make the box large
+	// coarse weld distance: the far points make the box large
+	for _, p := range []r3.Vec{{X: 1e8}, {X: 1e8, Y: 1}, {X: 1e8, Z: 1}} {
 		raw.Points = append(raw.Points, p)
 		raw.Tau = append(raw.Tau, r3.Vec{})
 	}
@@ -175,7 +182,8 @@ func TestUnits(t *testing.T) {
 		diagonal        float64
 		code            string
 	}{
-		{"", "", "", 1, "unit-of-length"}, {"mm", "", "m", 1e-3, "converted-units"}, {"", "in", "m", 0.0254, "converted-units"},
+		{"", "", "", 1, "unit-of-length"}, {"mm", "", "m", 1e-3, "converted-units"}, {"", "in", "m", 0.0254,
+			"converted-units"},
 		{"mm", "cm", "m", 1e-2, "unit-overruled"}, {"m", "m", "m", 1, ""},
 	} {
 		raw.Units.Length = c.told
@@ -188,7 +196,8 @@ func TestUnits(t *testing.T) {
 			t.Errorf("%+v: not told: %+v", c, f.Findings)
 		}
 	}
-	if _, err := format.Load("s.ply", plyOf(t, raw), format.Options{Unit: "parsec"}); err == nil || !strings.Contains(err.Error(), "--unit") {
+	if _, err := format.Load("s.ply", plyOf(t, raw), format.Options{Unit: "parsec"}); err == nil ||
+		!strings.Contains(err.Error(), "--unit") {
 		t.Errorf("parsec: %v", err)
 	}
 	raw.Units.Length = ""
@@ -196,7 +205,8 @@ func TestUnits(t *testing.T) {
 		raw.Points[i] = raw.Points[i].Scale(600)
 	}
 	f := load(t, "s.ply", plyOf(t, raw), format.Options{})
-	if d, _ := finding(f.Findings, "unit-of-length"); d.Level != field.Doubtful || !strings.Contains(d.Text, "--unit mm") || f.Units.Length != "" {
+	if d, _ := finding(f.Findings, "unit-of-length"); d.Level != field.Doubtful || !strings.Contains(d.Text,
+		"--unit mm") || f.Units.Length != "" {
 		t.Errorf("a body of 600: %+v", d)
 	}
 }

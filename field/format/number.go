@@ -6,7 +6,8 @@ import (
 )
 
 // exactPowers are the powers of ten that double precision holds exactly.
-var exactPowers = [...]float64{1e0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15, 1e16,
+var exactPowers = [...]float64{1e0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15,
+	1e16,
 	1e17, 1e18, 1e19, 1e20, 1e21, 1e22}
 
 // parseNumber reads a decimal number; the decimal mark is point. It accepts the spellings of missing values that
@@ -119,8 +120,8 @@ func missing(s []byte) (float64, bool) {
 	return 0, false
 }
 
-// scanNumber reads the plain decimal number at offset at, for the cells that nearly all tables have; ok is false for all
-// others, which parseNumber then reads. The result is exact by one rounding, as parseNumber's.
+// scanNumber reads the plain decimal number at offset at, for the cells that nearly all tables have; ok is false for
+// all others, which parseNumber then reads. The result is exact by one rounding, as parseNumber's.
 func scanNumber(data []byte, at int, point byte) (x float64, next int, ok bool) {
 	i := at
 	neg := false

@@ -9,7 +9,8 @@ import (
 	"shearprint/field/r3"
 )
 
-// OBJ holds points and polygons as text: it serves as --surface. Lines other than v and f carry nothing that matters here.
+// OBJ holds points and polygons as text: it serves as --surface. Lines other than v and f carry nothing that matters
+// here.
 
 // isOBJ tells the text by its first lines: each begins with a word of the format, and one of them is a point.
 func isOBJ(data []byte) bool {
@@ -103,7 +104,8 @@ func objCorner(src source, place string, w []byte, points int) (int32, error) {
 		n += points + 1
 	}
 	if err != nil || n < 1 || n > points {
-		return 0, src.fail(place, "export the surface again", "corner %s is none of the %d points before it", quote(string(w)), points)
+		return 0, src.fail(place, "export the surface again", "corner %s is none of the %d points before it",
+			quote(string(w)), points)
 	}
 	return int32(n - 1), nil
 }

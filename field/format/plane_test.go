@@ -98,7 +98,8 @@ func TestDegeneratePlanes(t *testing.T) {
 		"nothing":  {},
 		"skewline": {{X: 0, Y: 0}, {X: 1, Y: 1}, {X: 3, Y: 3}, {X: 2, Y: 2}},
 	} {
-		if _, err := format.Read(name, tableOf(p), format.Options{}); err == nil || !strings.HasPrefix(err.Error(), name+": ") {
+		if _, err := format.Read(name, tableOf(p), format.Options{}); err == nil || !strings.HasPrefix(err.Error(),
+			name+": ") {
 			t.Errorf("%s: error %v", name, err)
 		}
 	}
@@ -134,7 +135,8 @@ func TestAnyPlanarPoints(t *testing.T) {
 		var points []r3.Vec2
 		for range n {
 			x, y := rapid.IntRange(-6, 6).Draw(t, "x"), rapid.IntRange(-6, 6).Draw(t, "y")
-			points = append(points, r3.Vec2{X: float64(x), Y: float64(y)}.Add(r3.Vec2{X: step * float64(y), Y: step * float64(x*x)}))
+			points = append(points, r3.Vec2{X: float64(x), Y: float64(y)}.Add(r3.Vec2{X: step * float64(y),
+				Y: step * float64(x*x)}))
 		}
 		raw, err := format.Read("t.csv", tableOf(points), format.Options{})
 		if err != nil {

@@ -79,7 +79,8 @@ func TestPLYFormsAndTypes(t *testing.T) {
 					for _, n := range []string{"x", "y", "z", "tau_x", "tau_y", "tau_z", "p", "cp"} {
 						fmt.Fprintf(&w, "property %s %s\n", typ, n)
 					}
-					fmt.Fprintf(&w, "element face 2\nproperty %s flag\nproperty list %s %s vertex_indices\nproperty list uchar int extra\n",
+					fmt.Fprintf(&w, "element face 2\nproperty %s flag\nproperty list %s %s vertex_indices\nproperty list uchar "+
+						"int extra\n",
 						names[5], names[1], index)
 					fmt.Fprintf(&w, "element edge 1\nproperty int vertex1\nend_header\n")
 					for k := range 2 {
@@ -128,7 +129,8 @@ func TestPLYFaceValues(t *testing.T) {
 		w := plyWriter{form: form}
 		fmt.Fprintf(&w, "ply\r\nformat %s 1.0\r\ncomment units x y z [mm], cf [-]\r\nelement vertex 4\r\n", form)
 		fmt.Fprintf(&w, "property float x\r\nproperty float y\r\nproperty float z\r\nelement face 1\r\n")
-		fmt.Fprintf(&w, "property list uint8 uint32 vertex_index\r\nproperty float cf_x\r\nproperty float cf_y\r\nproperty float cf_z\r\n")
+		fmt.Fprintf(&w, "property list uint8 uint32 vertex_index\r\nproperty float cf_x\r\nproperty float "+
+			"cf_y\r\nproperty float cf_z\r\n")
 		fmt.Fprintf(&w, "property float cp\r\nend_header\r\n")
 		for _, p := range [][3]float64{{0, 0, 0}, {1, 0, 0}, {1, 1, 0}, {0, 1, 0}} {
 			for _, x := range p {
@@ -144,7 +146,8 @@ func TestPLYFaceValues(t *testing.T) {
 			t.Fatal(form, err)
 		}
 		want := r3.Vec{X: 0.5, Y: 0.25}
-		if len(raw.FaceTau) != 2 || raw.FaceTau[0] != want || raw.FaceTau[1] != want || raw.FaceCp[1] != -1 || raw.Tau != nil {
+		if len(raw.FaceTau) != 2 || raw.FaceTau[0] != want || raw.FaceTau[1] != want || raw.FaceCp[1] != -1 ||
+			raw.Tau != nil {
 			t.Errorf("%s: face values %v %v", form, raw.FaceTau, raw.FaceCp)
 		}
 		if raw.Units != (field.Units{Length: "mm", Tau: "1"}) {
@@ -156,7 +159,8 @@ func TestPLYFaceValues(t *testing.T) {
 // The user's names win over the usual ones, for points and faces.
 func TestPLYNamesByTheUser(t *testing.T) {
 	head := "ply\nformat ascii 1.0\nelement vertex 3\nproperty float x\nproperty float y\nproperty float z\n" +
-		"property float tau_x\nproperty float tau_y\nproperty float tau_z\nproperty float u\nproperty float v\nproperty float w\n" +
+		"property float tau_x\nproperty float tau_y\nproperty float tau_z\nproperty float u\nproperty float v\nproperty " +
+		"float w\n" +
 		"property float pt\nelement face 1\nproperty list uchar int vertex_indices\nproperty float q0\nproperty float q1\n" +
 		"property float q2\nend_header\n"
 	data := []byte(head + "0 0 0 1 1 1 2 3 4 5\n1 0 0 1 1 1 2 3 4 5\n0 1 0 1 1 1 2 3 4 5\n3 0 1 2 7 8 9\n")

@@ -46,7 +46,8 @@ func TestGLBRoundTripIsLossless(t *testing.T) {
 			t.Errorf("%s: %s %+v, %d points, %d triangles", name, raw.Name, raw.Units, len(raw.Points), len(raw.Tris))
 		}
 		for i, v := range raw.Tau {
-			if w := f.Tau3[i]; float32(w.X) != float32(v.X) || float32(w.Z) != float32(v.Z) || float32(f.P[i]) != float32(raw.P[i]) {
+			if w := f.Tau3[i]; float32(w.X) != float32(v.X) || float32(w.Z) != float32(v.Z) ||
+				float32(f.P[i]) != float32(raw.P[i]) {
 				t.Fatalf("%s: point %d has tau %v and p %g, want %v and %g", name, i, v, raw.P[i], w, f.P[i])
 			}
 		}

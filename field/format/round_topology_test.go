@@ -30,14 +30,17 @@ func TestRoundTripsKeepTopology(t *testing.T) {
 		table.WriteString("x\ty\tz\ttau_x\ttau_y\ttau_z\tp\tcp\n")
 		for i, p := range raw.Points {
 			v := raw.Tau[i]
-			fmt.Fprintf(&table, "%.9g\t%.9g\t%.9g\t%.9g\t%.9g\t%.9g\t%.9g\t%.9g\n", p.X, p.Y, p.Z, v.X, v.Y, v.Z, raw.P[i], raw.Cp[i])
+			fmt.Fprintf(&table, "%.9g\t%.9g\t%.9g\t%.9g\t%.9g\t%.9g\t%.9g\t%.9g\n", p.X, p.Y, p.Z, v.X, v.Y, v.Z, raw.P[i],
+				raw.Cp[i])
 		}
 		for what, c := range map[string]struct {
 			data []byte
 			opt  format.Options
 		}{
-			"PLY": {ply, format.Options{}}, "GLB": {glb.Bytes(), format.Options{}}, "gzipped GLB": {packed(t, glb.Bytes()), format.Options{}},
-			"gzipped PLY": {packed(t, ply), format.Options{}}, "table": {packed(t, table.Bytes()), format.Options{Surface: data}},
+			"PLY": {ply, format.Options{}}, "GLB": {glb.Bytes(), format.Options{}}, "gzipped GLB": {packed(t, glb.Bytes()),
+				format.Options{}},
+			"gzipped PLY": {packed(t, ply), format.Options{}}, "table": {packed(t, table.Bytes()),
+				format.Options{Surface: data}},
 		} {
 			got := pointsOf(t, load(t, what, c.data, c.opt))
 			if got != want {
@@ -71,7 +74,8 @@ func pointsOf(t *testing.T, f *field.Field) string {
 	var b bytes.Buffer
 	step := f.Diagonal() / 1000
 	for _, p := range s.Points {
-		fmt.Fprintf(&b, "%s %v %v at %.0f %.0f %.0f\n", p.ID, p.Type, p.Sense, p.Position.X/step, p.Position.Y/step, p.Position.Z/step)
+		fmt.Fprintf(&b, "%s %v %v at %.0f %.0f %.0f\n", p.ID, p.Type, p.Sense, p.Position.X/step, p.Position.Y/step,
+			p.Position.Z/step)
 	}
 	fmt.Fprintf(&b, "%+v, %s", s.Ledger.Count, s.Ledger.Rule)
 	return b.String()

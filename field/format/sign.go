@@ -15,7 +15,8 @@ const (
 	normalRefused  = 0.75
 )
 
-// normalContent measures how much of tau is not tangential, tells it, and refuses vectors that are no wall shear stress.
+// normalContent measures how much of tau is not tangential, tells it, and refuses vectors that are no wall shear
+// stress.
 func normalContent(src source, raw *field.Raw, _ Options) error {
 	normal, all := 0.0, 0.0
 	for t, tri := range raw.Tris {
@@ -42,13 +43,16 @@ func normalContent(src source, raw *field.Raw, _ Options) error {
 	switch {
 	case share > normalRefused:
 		return src.fail("", "name the wall shear stress with --tau; check that its axes are those of the positions",
-			"%.0f %% of the vectors' size points out of the surface: this is no wall shear stress (a force with the pressure in it, "+
+			"%.0f %% of the vectors' size points out of the surface: this is no wall shear stress (a force with the "+
+				"pressure in it, "+
 				"a velocity away from the wall, or other axes?)", 100*share)
 	case share > normalDoubtful:
-		note(raw, field.Doubtful, "normal-content", 0, "", "%.2g %% of the vectors' size points out of the surface; it was projected "+
-			"away", 100*share)
+		note(raw, field.Doubtful, "normal-content", 0, "",
+			"%.2g %% of the vectors' size points out of the surface; it was projected "+
+				"away", 100*share)
 	case share > 0:
-		note(raw, field.Note, "normal-content", 0, "", "%.2g %% of the vectors' size points out of the surface; it was projected away",
+		note(raw, field.Note, "normal-content", 0, "",
+			"%.2g %% of the vectors' size points out of the surface; it was projected away",
 			100*share)
 	}
 	return nil
@@ -61,8 +65,8 @@ const signLevel = 0.15
 // tellSign looks whether tau points along the flow or is the stress on the fluid. It tells; --flip alone applies.
 //
 // Two things are known. Where the pressure is highest, the flow comes to the surface and leaves in all directions: tau
-// points down the pressure gradient there. And over a whole surface, more of tau points with the stream than against it,
-// where the file tells the stream's direction.
+// points down the pressure gradient there. And over a whole surface, more of tau points with the stream than against
+// it, where the file tells the stream's direction.
 func tellSign(raw *field.Raw, stream r3.Vec) {
 	byPressure, okP := cosAtHighPressure(raw)
 	byStream, okS := cosToStream(raw, stream)
@@ -83,7 +87,8 @@ func tellSign(raw *field.Raw, stream r3.Vec) {
 	case !okP && !okS:
 		note(raw, field.Note, "sign-unknown", 0, "", "nothing in the run tells the sign of tau")
 	case sum < -signLevel:
-		note(raw, field.Doubtful, "sign", 0, "", "tau points against the flow (%s): it looks like the stress of the wall on the "+
+		note(raw, field.Doubtful, "sign", 0, "", "tau points against the flow (%s): it looks like the stress of the wall "+
+			"on the "+
 			"fluid; --flip turns it", why)
 	case sum > signLevel:
 		note(raw, field.Note, "sign", 0, "", "tau points along the flow (%s)", why)
@@ -95,8 +100,8 @@ func tellSign(raw *field.Raw, stream r3.Vec) {
 // highPressure is the share of the pressure's range, counted from its maximum, that is near a stagnation point.
 const highPressure = 0.3
 
-// cosAtHighPressure returns the mean cosine between tau and the falling pressure, weighted by area, where the pressure is
-// highest. ok is false without pressure or variation.
+// cosAtHighPressure returns the mean cosine between tau and the falling pressure, weighted by area, where the
+// pressure is highest. ok is false without pressure or variation.
 func cosAtHighPressure(raw *field.Raw) (mean float64, ok bool) {
 	p := pointPressure(raw)
 	lo, hi := math.Inf(1), math.Inf(-1)

@@ -10,8 +10,9 @@ import (
 	"shearprint/field/r3"
 )
 
-// STL holds triangles without shared points and without values: it serves as --surface. Binary: 80 bytes of comment, the
-// number of triangles, then 50 bytes for each. Its comment may begin with "solid" as the text form does; the size decides.
+// STL holds triangles without shared points and without values: it serves as --surface. Binary: 80 bytes of comment,
+// the number of triangles, then 50 bytes for each. Its comment may begin with "solid" as the text form does; the size
+// decides.
 
 const (
 	stlHeader   = 84
@@ -40,7 +41,8 @@ func looksCutSTL(data []byte) bool {
 func readBinarySTL(name string, data []byte, _ Options) (field.Raw, error) {
 	n := (len(data) - stlHeader) / stlTriangle
 	if !isBinarySTL(data) {
-		return field.Raw{}, source{name}.fail("byte 80", "copy the file again", "the header promises %d triangles, the file has room for %d",
+		return field.Raw{}, source{name}.fail("byte 80", "copy the file again",
+			"the header promises %d triangles, the file has room for %d",
 			little.Uint32(data[80:]), n)
 	}
 	if n == 0 {

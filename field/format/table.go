@@ -22,7 +22,8 @@ func readTable(name string, data []byte, opt Options) (field.Raw, error) {
 	if len(raw.Points) == 0 {
 		return *raw, t.fail("", "check the export", "the table has no rows")
 	}
-	note(raw, field.Note, "table", len(raw.Points), "", "a table of %d rows, separated by %s", len(raw.Points), t.dialect.String())
+	note(raw, field.Note, "table", len(raw.Points), "", "a table of %d rows, separated by %s", len(raw.Points),
+		t.dialect.String())
 	t.columns.tell(raw)
 	c := &t.columns
 	for k, axis := range "xyz" {

@@ -77,7 +77,8 @@ func TestTableSpellings(t *testing.T) {
 		scale  float64 // of tau
 	}{
 		{"x,y,z,tau_x,tau_y,tau_z,p", field.Units{Tau: "Pa", P: "Pa"}, 1},
-		{`"X (mm)","Y (mm)","Z (mm)","Wall Shear Stress[i] (Pa)","Wall Shear Stress[j] (Pa)","Wall Shear Stress[k] (Pa)","Pressure (Pa)"`,
+		{`"X (mm)","Y (mm)","Z (mm)","Wall Shear Stress[i] (Pa)","Wall Shear Stress[j] (Pa)",` +
+			`"Wall Shear Stress[k] (Pa)","Pressure (Pa)"`,
 			field.Units{Length: "mm", Tau: "Pa", P: "Pa"}, 1},
 		{"x [m],y [m],z [m],tau_x [kPa],tau_y [kPa],tau_z [kPa],p [Pa]", field.Units{Length: "m", Tau: "Pa", P: "Pa"}, 1000},
 		{"Points:0,Points:1,Points:2,wallShearStress:0,wallShearStress:1,wallShearStress:2,p", field.Units{}, 1},
@@ -122,7 +123,8 @@ func finding(list []field.Finding, code string) (field.Finding, bool) {
 // --tau, --p and --cp override; a table without a known name asks for them.
 func TestTableNamesByTheUser(t *testing.T) {
 	text := gridTable("x,y,z,a [1],b [1],c [1],q", ",", ".", "\n")
-	if _, err := format.Read("t.csv", []byte(text), format.Options{}); err == nil || !strings.Contains(err.Error(), "--tau") {
+	if _, err := format.Read("t.csv", []byte(text), format.Options{}); err == nil || !strings.Contains(err.Error(),
+		"--tau") {
 		t.Errorf("unknown names: %v", err)
 	}
 	raw, err := format.Read("t.csv", []byte(text), format.Options{Tau: "a,b,c", P: "q"})
@@ -130,7 +132,8 @@ func TestTableNamesByTheUser(t *testing.T) {
 		t.Errorf("%v, %v", raw.Tau, err)
 	}
 	for header, name := range map[string]string{
-		"x,y,z,U_x,U_y,U_z,p": "U", "x,y,z,UX,UY,UZ,p": "U", "x,y,z,Velocity[i] (m/s),Velocity[j] (m/s),Velocity[k] (m/s),p": "velocity",
+		"x,y,z,U_x,U_y,U_z,p": "U", "x,y,z,UX,UY,UZ,p": "U",
+		"x,y,z,Velocity[i] (m/s),Velocity[j] (m/s),Velocity[k] (m/s),p": "velocity",
 		"x,y,z,U:0,U:1,U:2,p": "U", "x,y,z,U1,U2,U3,p": "U",
 	} {
 		raw, err := format.Read("t.csv", []byte(gridTable(header, ",", ".", "\n")), format.Options{Tau: name})

@@ -24,8 +24,8 @@ func (m matrix) size() float64 {
 	return math.Max(m[0].Norm(), math.Max(m[1].Norm(), m[2].Norm()))
 }
 
-// flatRatio is the volume of the images of the axes over the cube of the longest below which a map has lost a dimension:
-// matrices in single precision carry errors of 1e-7.
+// flatRatio is the volume of the images of the axes over the cube of the longest below which a map has lost a
+// dimension: matrices in single precision carry errors of 1e-7.
 const flatRatio = 1e-9
 
 // singular tells whether the map squashes space flat, or holds no usable numbers.
@@ -34,9 +34,9 @@ func (m matrix) singular() bool {
 	return !(s > 1e-30 && s < 1e30) || !(math.Abs(m.det()) > flatRatio*float64(s*float64(s*s)))
 }
 
-// orthogonal returns the rotation, with a reflection where m mirrors, that is nearest to m: the orthogonal factor of the
-// polar decomposition, by Newton's iteration Q <- (Q + Q^-T)/2 (N. J. Higham, Computing the polar decomposition, 1986,
-// from memory). It converges quadratically from any regular matrix.
+// orthogonal returns the rotation, with a reflection where m mirrors, that is nearest to m: the orthogonal factor of
+// the polar decomposition, by Newton's iteration Q <- (Q + Q^-T)/2 (N. J. Higham, Computing the polar decomposition,
+// 1986, from memory). It converges quadratically from any regular matrix.
 func (m matrix) orthogonal() matrix {
 	s := m.size()
 	q := matrix{m[0].Scale(1 / s), m[1].Scale(1 / s), m[2].Scale(1 / s)}

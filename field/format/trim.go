@@ -10,8 +10,9 @@ import (
 // of neighbouring points vary by less than two in any mesh that resolves a flow.
 const longRatio = 4
 
-// trimLong drops, in place, triangles that bridge bays of the outline and holes in the data: those whose longest edge exceeds
-// longRatio times what is usual at two of their corners. Usual is the lower quartile over the triangles around a point.
+// trimLong drops, in place, triangles that bridge bays of the outline and holes in the data: those whose longest edge
+// exceeds longRatio times what is usual at two of their corners. Usual is the lower quartile over the triangles
+// around a point.
 func trimLong(tris [][3]int32, p []r3.Vec2) [][3]int32 {
 	long := make([]float32, len(tris)) // single precision is enough to tell long from short
 	start := make([]int32, len(p)+1)

@@ -109,7 +109,8 @@ func pressureUnit(raw *field.Raw, unit string, contract bool) string {
 	case unit == "":
 		return ""
 	case kinematic[plain]:
-		note(raw, field.Doubtful, "kinematic-p", 0, "", "p is kinematic (%s): pressure over density; its numbers are kept", unit)
+		note(raw, field.Doubtful, "kinematic-p", 0, "", "p is kinematic (%s): pressure over density; its numbers are kept",
+			unit)
 		return "m2/s2"
 	case !known:
 		note(raw, field.Doubtful, "unknown-unit", 0, "", "the unit of p %s is not known; its numbers are kept", quote(unit))

@@ -137,9 +137,9 @@ func meanScalar(x []float64, number []int32, n int) []float64 {
 // coincident returns, per point, the lowest-numbered representative within the distance, itself where there is none.
 // Points without a place are never joined.
 //
-// Representatives are kept in a hash grid whose cells are larger than the distance, so that most points ask one cell and
-// only those near a cell's border ask its neighbours too; but not so large that a hostile file could fill one with more
-// than some thousand points that lie apart.
+// Representatives are kept in a hash grid whose cells are larger than the distance, so that most points ask one cell
+// and only those near a cell's border ask its neighbours too; but not so large that a hostile file could fill one
+// with more than some thousand points that lie apart.
 func coincident(points []r3.Vec, distance float64) []int32 {
 	const cellsPerDistance = 16
 	g := newPointGrid(len(points), math.Max(cellsPerDistance*distance, math.SmallestNonzeroFloat64), boxOf(points).Min)
