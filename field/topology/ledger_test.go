@@ -176,6 +176,35 @@ func TestTangencies(t *testing.T) {
 	}
 }
 
+// The disk with two holes in a uniform stream: four interior tangencies at the holes, two exterior ones outside, sum 0.
+func TestTangenciesAtHoles(t *testing.T) {
+	raw := exact.Plate(2, 1, 4000)
+	kept := raw.Tris[:0]
+	for _, tri := range raw.Tris {
+		c := raw.Points[tri[0]].Add(raw.Points[tri[1]]).Add(raw.Points[tri[2]]).Scale(1. / 3)
+		if c.Sub(r3.Vec{X: 0.9}).Norm() > 0.3 && c.Sub(r3.Vec{X: -0.8, Y: 0.1}).Norm() > 0.4 {
+			kept = append(kept, tri)
+		}
+	}
+	raw.Tris = kept
+	for i, p := range raw.Points { // rounds off the holes' stairs, so that each has two tangencies only
+		for _, hole := range []r3.Vec{{X: 0.9, Z: 0.3}, {X: -0.8, Y: 0.1, Z: 0.4}} {
+			d := p.Sub(r3.Vec{X: hole.X, Y: hole.Y})
+			if d.Norm() < hole.Z+0.08 && d.Norm() > 0 {
+				raw.Points[i] = p.AddScaled(0.8*(hole.Z+0.04-d.Norm()), d.Unit())
+			}
+		}
+	}
+	s := find(t, planeField(t, raw, func(x, y float64) (float64, float64) { return 1, 0.3 }), topology.Options{})
+	in, out := 0, 0
+	for _, r := range s.Ledger.Parts[0].Rims {
+		in, out = in+r.Interior, out+r.Exterior
+	}
+	if l := s.Ledger; in-out != 2 || l.IndexSum != 0 || l.BoundaryTerm != 1 || l.Parts[0].Euler != -1 || !l.Balanced {
+		t.Errorf("%d interior and %d exterior tangencies, ledger %+v", in, out, l.Count)
+	}
+}
+
 func caseNamed(name string) exact.Case {
 	for _, c := range exact.Cases() {
 		if c.Name == name {
