@@ -80,9 +80,15 @@ func chooseHeader(src source, row string, words []headerLine, line int) (d diale
 			continue
 		}
 		d.header = splitHeader(words[k].text, d.sep)
-		if len(d.header) == len(splitCells(row, d.sep)) {
-			return d, true, nil
+		if len(d.header) != len(splitCells(row, d.sep)) {
+			continue
 		}
+		if k > 0 && isUnits(d.header) { // a line of units below the line of names
+			if names := splitHeader(words[k-1].text, d.sep); len(names) == len(d.header) {
+				d.header = joinUnits(names, d.header)
+			}
+		}
+		return d, true, nil
 	}
 	if d, isRow = rowDialect(row, ""); !isRow {
 		return d, false, nil
@@ -118,6 +124,33 @@ func cutLine(data []byte, at int) (line []byte, next int) {
 	return data[at : at+end], next
 }
 
+// isUnits tells whether all cells are units, bracketed or bare, and at least one cannot be a name.
+func isUnits(cells []string) bool {
+	sure := false
+	for _, c := range cells {
+		bracketed := len(c) >= 2 && (c[0] == '[' || c[0] == '(') && strings.ContainsAny(c[len(c)-1:], "])")
+		plain := plainUnit(strings.Trim(c, "[]()"))
+		_, isLength := lengths[plain]
+		_, isStress := stresses[plain]
+		if !bracketed && !isLength && !isStress && !kinematic[plain] && plain != "-" && plain != "1" && c != "" {
+			return false
+		}
+		sure = sure || bracketed || isStress
+	}
+	return sure
+}
+
+func joinUnits(names, units []string) []string {
+	out := make([]string, len(names))
+	for i, n := range names {
+		out[i] = n
+		if u := strings.Trim(units[i], "[]() "); u != "" {
+			out[i] += " [" + u + "]"
+		}
+	}
+	return out
+}
+
 // rowDialect tells how a row of numbers is separated; ok is false if the line is no such row. Three numbers make a row.
 func rowDialect(row, header string) (dialect, bool) {
 	try := []dialect{{sep: ';', point: '.'}, {sep: ';', point: ','}, {sep: '\t', point: '.'}, {sep: '\t', point: ','}}
@@ -131,15 +164,23 @@ func rowDialect(row, header string) (dialect, bool) {
 		if len(cells) < 3 || len(cells) > maxColumns {
 			continue
 		}
-		numbers := 0
+		numbers, finite, filled := 0, 0, 0
 		for _, c := range cells {
-			if x, ok := parseNumber([]byte(c), d.point); ok && x == x {
+			if c == "" {
+				continue
+			}
+			filled++
+			switch x, ok := parseNumber([]byte(c), d.point); {
+			case ok && x == x:
+				finite++
 				numbers++
-			} else if !ok && !quoted(c) && !isWord(c) {
+			case ok:
+				numbers++
+			case !quoted(c) && !isWord(c):
 				numbers = -len(cells)
 			}
 		}
-		if numbers >= 3 && 2*numbers > len(cells) {
+		if finite >= 3 && 2*numbers > filled {
 			return d, true
 		}
 	}

@@ -51,6 +51,7 @@ func TestTableDialects(t *testing.T) {
 		"no end of line":          strings.TrimRight(gridTable(plain, ",", ".", "\n"), "\n"),
 		"exponents":               strings.ReplaceAll(gridTable(plain, ",", ".", "\n"), "100.25", "+1.0025E+02"),
 		"Fortran exponents":       strings.ReplaceAll(gridTable(plain, ",", ".", "\n"), "100.25", "0.10025D+03"),
+		"units in a line":         gridTable(plain+"\n[-],[-],[-],[Pa],[Pa],[Pa],[Pa]", ",", ".", "\n"),
 		"an empty row":            gridTable(plain, ",", ".", "\n") + ",,,,,,\n",
 	} {
 		if name == "quoted cells" {
@@ -66,6 +67,15 @@ func TestTableDialects(t *testing.T) {
 			raw.Tau[7] != (r3.Vec{X: 8.5, Y: -2}) || raw.P[11] != 100.25 {
 			t.Errorf("%s: %d points, %d triangles, %v %v %v", name, len(raw.Points), len(raw.Tris), raw.Points, raw.Tau, raw.P)
 		}
+	}
+}
+
+// A first row without values is a row, not a header; it is a hole of the run.
+func TestTableBeginsWithAGap(t *testing.T) {
+	text := strings.Replace(gridTable("x,y,z,tau_x,tau_y,tau_z,p", ",", ".", "\n"), "1.5,-2,0,100.25", "nan,,NaN,-1.#IND", 1)
+	f := load(t, "t.csv", []byte(text), format.Options{})
+	if len(f.Tris) != 12-2 || !hasFinding(f.Findings, "holes", 2) {
+		t.Errorf("%d triangles, %+v", len(f.Tris), f.Findings)
 	}
 }
 
@@ -90,6 +100,8 @@ func TestTableSpellings(t *testing.T) {
 			field.Units{Length: "ft", Tau: "Pa", P: "Pa"}, 1},
 		{"x,y,z,wallShearStress_x [m^2/s^2],wallShearStress_y [m^2/s^2],wallShearStress_z [m^2/s^2],p [m2/s2]",
 			field.Units{Tau: "m2/s2", P: "m2/s2"}, 1},
+		{"x [m],y [m],z [m],wss_x [m\xb2/s\xb2],wss_y [m\xb2/s\xb2],wss_z [m\xb2/s\xb2],p [m²/s²]",
+			field.Units{Length: "m", Tau: "m2/s2", P: "m2/s2"}, 1},
 		{"x,y,z,cf_x,cf_y,cf_z,p", field.Units{Tau: "1"}, 1},
 		{"x,y,z,CoefSkinFrictionX,CoefSkinFrictionY,CoefSkinFrictionZ,p", field.Units{Tau: "1"}, 1},
 		{"x,y,z,Skin Friction Coefficient X,Skin Friction Coefficient Y,Skin Friction Coefficient Z,p (kg/(m s^2))",

@@ -2,6 +2,7 @@ package format
 
 import (
 	"strings"
+	"unicode/utf8"
 
 	"shearprint/field"
 )
@@ -26,8 +27,12 @@ var stresses = map[string]float64{
 // kinematic lists spellings of stress over density.
 var kinematic = map[string]bool{"m2/s2": true, "m2s-2": true, "(m/s)2": true, "m/s2m": true}
 
-// plainUnit reduces the spellings of a unit: "N/m^2" and "N m**-2" have no hats, blanks and dots.
+// plainUnit reduces the spellings of a unit: "N/m^2" and "N m**-2" have no hats, blanks and dots; a raised two may come
+// as UTF-8 or as Latin-1.
 func plainUnit(s string) string {
+	if !utf8.ValidString(s) {
+		s = strings.ReplaceAll(s, "\xb2", "2")
+	}
 	s = strings.ToLower(s)
 	for _, r := range []struct{ old, new string }{
 		{"²", "2"}, {"**", ""}, {"^", ""}, {"·", ""}, {"*", ""}, {".", ""}, {"(", ""}, {")", ""},
