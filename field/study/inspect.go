@@ -94,14 +94,9 @@ func (s *Study) Inspect(ctx context.Context) (*Inspection, error) {
 		}
 	}
 	out.Ranges = Ranges{Tau: rangeOf(sizes), P: rangeOf(f.P), Cp: rangeOf(f.Cp)}
-	s.jumps(out)
-	if share := float64(out.SharpTurns) / float64(max(1, out.Edges)); share > roughShare {
-		out.Findings = append(out.Findings, field.Finding{
-			Level: field.Doubtful, Code: "rough-field", Count: out.SharpTurns,
-			Text: fmt.Sprintf("tau turns by more than 45 degrees along %.2g %% of the edges: the mesh is too coarse for the field, "+
-				"or the solution is not converged; weak critical points are noise", 100*share),
-		})
-	}
+	out.SharpTurns, out.Edges = s.sharpTurns()
+	s.largestJump(out)
+	out.Findings = append(out.Findings, roughness(out.SharpTurns, out.Edges)...)
 	return out, nil
 }
 
@@ -112,22 +107,48 @@ func rangeOf(x []float64) *[2]Number {
 	return &[2]Number{Number(slices.Min(x)), Number(slices.Max(x))}
 }
 
-// jumps compares tau at the two ends of every edge, in the chart of the edge's tip.
-func (s *Study) jumps(out *Inspection) {
+// sharpTurns counts the edges, and those along which tau turns by more than sharpTurn.
+func (s *Study) sharpTurns() (sharp, edges int) {
+	f := s.f
+	for h, twin := range f.Twin {
+		h := int32(h)
+		if h < twin { // the other half of the edge is looked at
+			continue
+		}
+		edges++
+		a, b := f.Tail(h), f.Tip(h)
+		turn := r3.Wrap(f.Angle(b) - f.Angle(a) - f.Transport(h))
+		if math.Abs(turn) > sharpTurn && !f.IsZero(a) && !f.IsZero(b) {
+			sharp++
+		}
+	}
+	return sharp, edges
+}
+
+// roughness returns the finding that the field is rough, if it is.
+func roughness(sharp, edges int) []field.Finding {
+	share := float64(sharp) / float64(max(1, edges))
+	if share <= roughShare {
+		return nil
+	}
+	return []field.Finding{{
+		Level: field.Doubtful, Code: "rough-field", Count: sharp,
+		Text: fmt.Sprintf("tau turns by more than 45 degrees along %.2g %% of the edges: the mesh is too coarse for the field, "+
+			"or the solution is not converged; weak critical points are noise", 100*share),
+	}}
+}
+
+// largestJump compares tau at the two ends of every edge, in the chart of the edge's tip.
+func (s *Study) largestJump(out *Inspection) {
 	f := s.f
 	largest, at := -1.0, int32(-1)
 	for h, twin := range f.Twin {
-		if int32(h) < twin { // the other half of the edge is looked at
+		h := int32(h)
+		if h < twin {
 			continue
 		}
-		h := int32(h)
-		out.Edges++
 		a, b := f.Tail(h), f.Tip(h)
-		carried := f.Angle(a) + f.Transport(h)
-		if !f.IsZero(a) && !f.IsZero(b) && math.Abs(r3.Wrap(f.Angle(b)-carried)) > sharpTurn {
-			out.SharpTurns++
-		}
-		if d := f.Tau[b].Sub(r3.Polar(f.Size(a), carried)).Norm(); d > largest {
+		if d := f.Tau[b].Sub(r3.Polar(f.Size(a), f.Angle(a)+f.Transport(h))).Norm(); d > largest {
 			largest, at = d, h
 		}
 	}

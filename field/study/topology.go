@@ -18,10 +18,9 @@ type Topology struct {
 	Points          []Point         `json:"points"`
 	Lines           []Line          `json:"lines"`
 	Ledger          Ledger          `json:"ledger"`
-	Findings        []field.Finding `json:"findings"`
+	Findings        []field.Finding `json:"findings"` // what is doubtful, of the run and of the reading
 
 	maxTau float64
-	doubts []field.Finding // of the run itself: inspect lists them all
 }
 
 // Point is a critical point.
@@ -113,12 +112,13 @@ func (s *Study) Topology(ctx context.Context, opt topology.Options) (*Topology, 
 		Schema: "shearprint/topology/1", Run: s.run(), Surface: s.surface(),
 		Floor: Number(sk.Floor), CancelledPoints: sk.Cancelled,
 		Points: []Point{}, Lines: []Line{}, Ledger: ledgerOf(sk.Ledger),
-		Findings: append([]field.Finding{}, sk.Findings...),
-		maxTau:   s.f.MaxTau,
+		Findings: []field.Finding{}, maxTau: s.f.MaxTau,
 	}
-	for _, f := range s.f.Findings {
-		if f.Level == field.Doubtful {
-			out.doubts = append(out.doubts, f)
+	for _, list := range [][]field.Finding{s.f.Findings, roughness(s.sharpTurns()), sk.Findings} {
+		for _, f := range list {
+			if f.Level == field.Doubtful {
+				out.Findings = append(out.Findings, f)
+			}
 		}
 	}
 	for i := range sk.Points {

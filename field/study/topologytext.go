@@ -6,7 +6,6 @@ import (
 	"math"
 	"strings"
 
-	"shearprint/field"
 	"shearprint/field/topology"
 )
 
@@ -28,8 +27,8 @@ func (t *Topology) WriteText(w io.Writer) error {
 func (t *Topology) verdict() string {
 	words := t.Ledger.verdict()
 	if t.CancelledPoints > 0 {
-		words += fmt.Sprintf(" %s weaker than %s cancelled in balanced groups.",
-			count(t.CancelledPoints, "point", "points"), with(t.Floor, t.Run.TauUnit))
+		words += fmt.Sprintf(" %s weaker than %s, cancelled in balanced groups.",
+			count(t.CancelledPoints, "point is left out as", "points are left out as"), with(t.Floor, t.Run.TauUnit))
 	}
 	return words
 }
@@ -221,15 +220,14 @@ func (t *Topology) writeDoubts(s *sheet) {
 	for _, r := range reasons {
 		s.para("  - ", r+": "+strings.Join(points[r], ", "))
 	}
-	list := append(append([]field.Finding{}, t.Findings...), t.doubts...)
-	for _, f := range list {
+	for _, f := range t.Findings {
 		words := f.Text
 		if f.Where != "" {
 			words += " (first: " + f.Where + ")"
 		}
 		s.para("  - ", words)
 	}
-	if len(reasons)+len(list) == 0 {
+	if len(reasons)+len(t.Findings) == 0 {
 		s.line("  nothing that the tool can see; it certifies nothing all the same")
 	}
 }
