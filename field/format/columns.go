@@ -1,11 +1,6 @@
 package format
 
-import (
-	"fmt"
-	"strings"
-
-	"shearprint/field"
-)
+import "strings"
 
 // The trade's spellings per quantity, reduced by normal, the preferred first. A user's own names win over all of them.
 var (
@@ -185,8 +180,9 @@ func (c *columns) byName(name string) int {
 	name = strings.TrimSpace(name)
 	for _, same := range []func(label) bool{
 		func(l label) bool { return l.name == name },
+		func(l label) bool { return l.bare == name },
 		func(l label) bool { return l.plain == name },
-		func(l label) bool { return normal(l.plain) == normal(name) || normal(l.name) == normal(name) },
+		func(l label) bool { return normal(l.bare) == normal(name) || normal(l.name) == normal(name) },
 	} {
 		for col, l := range c.labels {
 			if same(l) {
@@ -206,33 +202,4 @@ func (c *columns) userScalar(src source, option, name string, names []string) (i
 		return -1, c.unknown(src, option, name)
 	}
 	return col, nil
-}
-
-// tell says how the columns were understood, where their names are not the contract's own.
-func (c *columns) tell(raw *field.Raw) {
-	var say []string
-	add := func(what string, own []string, cols ...int) {
-		var names []string
-		same := true
-		for k, col := range cols {
-			if col >= 0 {
-				names = append(names, c.labels[col].name)
-				same = same && c.labels[col].name == own[k]
-			}
-		}
-		if len(names) > 0 && !same {
-			say = append(say, fmt.Sprintf("%s from %s", what, strings.Join(names, ", ")))
-		}
-	}
-	add("position", []string{"x", "y", "z"}, c.x[:]...)
-	if c.coefficient {
-		add("skin-friction coefficient", []string{"cf_x", "cf_y", "cf_z"}, c.tau[:]...)
-	} else {
-		add("tau", []string{"tau_x", "tau_y", "tau_z"}, c.tau[:]...)
-	}
-	add("p", []string{"p"}, c.p)
-	add("cp", []string{"cp"}, c.cp)
-	if len(say) > 0 {
-		note(raw, field.Note, "matched-names", len(say), "", "names were matched: %s", strings.Join(say, "; "))
-	}
 }

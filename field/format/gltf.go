@@ -160,7 +160,7 @@ func readGLB(name string, data []byte, opt Options) (field.Raw, error) {
 		}
 		at = from + length + (4-length%4)%4
 	}
-	return r.read(text)
+	return r.read(bytes.TrimRight(text, " \x00")) // some writers pad with NUL
 }
 
 // Bounds of the JSON before it is decoded: decoded objects take some hundred times the bytes of "{}", entries of maps

@@ -9,7 +9,8 @@ import (
 // "wallshearstress" in Pa.
 type label struct {
 	name   string  // as the file has it
-	plain  string  // without unit
+	plain  string  // without unit and without component in brackets
+	bare   string  // without unit
 	unit   string  // words in the trailing brackets; "" where there are none
 	splits []split // readings as component and base, the most explicit first
 }
@@ -27,21 +28,27 @@ func parseLabel(name string) label {
 	s := strings.TrimSpace(strings.Trim(strings.TrimSpace(name), `"`))
 	comp := -1
 	num := false
+	unitPart := ""
 	for range 2 { // a component and a unit at most, in either order
 		inner, rest, ok := trailingBracket(s)
 		if !ok {
 			break
 		}
-		if c, n := component(inner); c >= 0 && comp < 0 {
+		c, n := component(inner)
+		if n && inner == "1" && len(splitName(rest)) > 0 {
+			c = -1 // "cf_x [1]": the unit of a pure number
+		}
+		if c >= 0 && comp < 0 {
 			comp, num = c, n
 		} else if l.unit == "" && rest != "" {
-			l.unit = inner
+			l.unit, unitPart = inner, s[len(rest):]
 		} else {
 			break
 		}
 		s = rest
 	}
 	l.plain = s
+	l.bare = strings.TrimSpace(strings.Replace(name, unitPart, "", 1))
 	if comp >= 0 {
 		l.splits = []split{{normal(s), comp, num}}
 		return l

@@ -3,6 +3,7 @@ package format
 import (
 	"errors"
 	"path"
+	"slices"
 	"strings"
 
 	"shearprint/field"
@@ -32,7 +33,7 @@ func readRun(name string, data []byte, opt *Options) (field.Raw, hints, error) {
 	case opt.Surface == nil:
 	case len(raw.Tris) > 0:
 		note(&raw, field.Note, "surface-unused", 0, "", "the run has triangles of its own; the surface %s was not used",
-			opt.SurfaceName)
+			baseName(opt.SurfaceName))
 	default:
 		if h, err = attach(source{name}, &raw, h, *opt); err != nil {
 			return field.Raw{}, hints{}, err
@@ -83,16 +84,19 @@ func Load(name string, data []byte, opt Options) (*field.Field, error) {
 	return f, err
 }
 
+// baseName returns the file's name without folder: findings do not depend on where a file lies.
+func baseName(name string) string { return oneLine(path.Base(strings.ReplaceAll(name, `\`, "/"))) }
+
 // shortName returns the file's name without folder and endings.
 func shortName(name string) string {
-	name = path.Base(strings.ReplaceAll(name, `\`, "/"))
+	name = baseName(name)
 	if s := strings.TrimSuffix(name, ".gz"); s != "" {
 		name = s
 	}
 	if i := strings.LastIndexByte(name, '.'); i > 0 {
 		name = name[:i]
 	}
-	return oneLine(name)
+	return name
 }
 
 // flip turns tau where the user says that the file holds the stress on the fluid.
@@ -106,6 +110,7 @@ func flip(_ source, raw *field.Raw, opt Options) error {
 	for i, v := range raw.FaceTau {
 		raw.FaceTau[i] = r3.Vec{}.Sub(v)
 	}
+	raw.Findings = slices.DeleteFunc(raw.Findings, func(f field.Finding) bool { return f.Code == "opposite-surface" })
 	note(raw, field.Note, "flipped-tau", 0, "", "the sign of tau was turned, as --flip asks")
 	return nil
 }

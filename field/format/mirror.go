@@ -2,6 +2,7 @@ package format
 
 import (
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -9,9 +10,12 @@ import (
 	"shearprint/field/r3"
 )
 
-// onPlaneFraction of the size: points nearer to the mirror plane lie on it. Exports in single precision put points of
-// the plane off it by 1e-7 of the coordinates.
-const onPlaneFraction = 1e-6
+// Points that lie on the mirror plane. Exports in single precision put them off it by 1e-7 of the coordinates; solvers
+// that move meshes, by more, but by little against the edges. The larger distance holds for points on the rim alone.
+const (
+	onPlaneFraction = 1e-6 // of the size
+	rimFraction     = 0.05 // of the shortest edge of the rim at the point
+)
 
 // mirror completes a half model: the points are reflected, the vectors with them, and the points on the plane are one
 // with their images.
@@ -28,7 +32,7 @@ func mirror(src source, raw *field.Raw, opt Options) error {
 		return nil // numbers that Build refuses
 	}
 	m := mirroring{axis: axis, value: value}
-	if err := m.findSeam(src, raw, float64(onPlaneFraction*size)); err != nil {
+	if err := m.findSeam(src, raw, rimDistances(raw, float64(onPlaneFraction*size))); err != nil {
 		return err
 	}
 	m.dropFlat(raw)
@@ -63,8 +67,37 @@ func (m *mirroring) coordinate(v *r3.Vec) *float64 {
 	return [3]*float64{&v.X, &v.Y, &v.Z}[m.axis]
 }
 
+// rimDistances returns, per point, how near to the plane it must be to lie on it.
+func rimDistances(raw *field.Raw, least float64) []float64 {
+	keys := make([]uint64, 0, 3*len(raw.Tris))
+	for _, tri := range raw.Tris {
+		for k := range 3 {
+			a, b := tri[k], tri[(k+1)%3]
+			keys = append(keys, uint64(min(a, b))<<32|uint64(max(a, b)))
+		}
+	}
+	slices.Sort(keys)
+	shortest := make([]float64, len(raw.Points))
+	for i, key := range keys {
+		if i > 0 && keys[i-1] == key || i+1 < len(keys) && keys[i+1] == key {
+			continue // an edge inside
+		}
+		a, b := int32(key>>32), int32(uint32(key))
+		d := float64(rimFraction * raw.Points[a].Sub(raw.Points[b]).Norm())
+		for _, v := range [2]int32{a, b} {
+			if shortest[v] == 0 || d < shortest[v] {
+				shortest[v] = d
+			}
+		}
+	}
+	for v, d := range shortest {
+		shortest[v] = math.Max(d, least)
+	}
+	return shortest
+}
+
 // findSeam puts the points near the plane on it, and refuses runs that do not end there.
-func (m *mirroring) findSeam(src source, raw *field.Raw, tol float64) error {
+func (m *mirroring) findSeam(src source, raw *field.Raw, tol []float64) error {
 	m.onSeam = make([]bool, len(raw.Points))
 	sides := [2]int{}
 	nearest := math.Inf(1)
@@ -76,7 +109,7 @@ func (m *mirroring) findSeam(src source, raw *field.Raw, tol float64) error {
 		x := m.coordinate(p)
 		d := *x - m.value
 		switch {
-		case math.Abs(d) <= tol:
+		case math.Abs(d) <= tol[i]:
 			*x = m.value
 			m.onSeam[i] = true
 			m.seam = append(m.seam, int32(i))

@@ -25,6 +25,7 @@ func readTable(name string, data []byte, opt Options) (field.Raw, error) {
 	note(raw, field.Note, "table", len(raw.Points), "", "a table of %d rows, separated by %s", len(raw.Points),
 		t.dialect.String())
 	t.columns.tell(raw)
+	t.columns.tellUnused(raw)
 	c := &t.columns
 	for k, axis := range "xyz" {
 		if c.x[k] < 0 {

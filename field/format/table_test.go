@@ -103,6 +103,7 @@ func TestTableSpellings(t *testing.T) {
 		{"x [m],y [m],z [m],wss_x [m\xb2/s\xb2],wss_y [m\xb2/s\xb2],wss_z [m\xb2/s\xb2],p [m²/s²]",
 			field.Units{Length: "m", Tau: "m2/s2", P: "m2/s2"}, 1},
 		{"x,y,z,cf_x,cf_y,cf_z,p", field.Units{Tau: "1"}, 1},
+		{"x [m],y [m],z [m],cf_x [1],cf_y [1],cf_z [1],p [Pa]", field.Units{Length: "m", Tau: "1", P: "Pa"}, 1},
 		{"x,y,z,CoefSkinFrictionX,CoefSkinFrictionY,CoefSkinFrictionZ,p", field.Units{Tau: "1"}, 1},
 		{"x,y,z,Skin Friction Coefficient X,Skin Friction Coefficient Y,Skin Friction Coefficient Z,p (kg/(m s^2))",
 			field.Units{Tau: "1", P: "Pa"}, 1},
@@ -142,6 +143,13 @@ func TestTableNamesByTheUser(t *testing.T) {
 	raw, err := format.Read("t.csv", []byte(text), format.Options{Tau: "a,b,c", P: "q"})
 	if err != nil || raw.Tau[7] != (r3.Vec{X: 8.5, Y: -2}) || raw.P[0] != 100.25 {
 		t.Errorf("%v, %v", raw.Tau, err)
+	}
+	text = gridTable(`x,y,z,"A[i] (Pa)","A[j] (Pa)","A[k] (Pa)",q (Pa)`, ",", ".", "\n")
+	for _, name := range []string{"A", "A[i],A[j],A[k]", "A[i] (Pa), A[j] (Pa), A[k] (Pa)", "a(i),a(j),a(k)"} {
+		raw, err := format.Read("t.csv", []byte(text), format.Options{Tau: name, P: "q"})
+		if err != nil || raw.Tau[7] != (r3.Vec{X: 8.5, Y: -2}) || raw.Units != (field.Units{Tau: "Pa", P: "Pa"}) {
+			t.Errorf("--tau %s: %v, %+v", name, err, raw.Units)
+		}
 	}
 	for header, name := range map[string]string{
 		"x,y,z,U_x,U_y,U_z,p": "U", "x,y,z,UX,UY,UZ,p": "U",
