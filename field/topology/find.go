@@ -38,6 +38,9 @@ func Find(ctx context.Context, f *field.Field, opt Options) (*Skeleton, error) {
 	if opt.Relative {
 		s.Floor = float64(opt.MinRobustness * f.MaxTau)
 	}
+	if !(s.Floor > 0) { // not a number counts as no floor
+		s.Floor = 0
+	}
 	kept := c.seeds[:0:0]
 	for _, seed := range c.seeds {
 		if c.level(seed.robust) >= s.Floor {
@@ -53,7 +56,7 @@ func Find(ctx context.Context, f *field.Field, opt Options) (*Skeleton, error) {
 		return nil, err
 	}
 	s.makeLedger(c)
-	s.tellDoubts()
+	s.tellFindings()
 	progress(1)
 	return s, nil
 }
@@ -125,24 +128,4 @@ func (s *Skeleton) tellClose(ctx context.Context) error {
 		}
 		pool.Put(a)
 	})
-}
-
-// tellDoubts adds findings on the points that the mesh does not resolve.
-func (s *Skeleton) tellDoubts() {
-	count, where := 0, ""
-	for _, p := range s.Points {
-		if !p.Resolved {
-			if count == 0 {
-				where = p.ID
-			}
-			count++
-		}
-	}
-	if count > 0 {
-		s.Findings = append(s.Findings, field.Finding{
-			Level: field.Doubtful, Code: "unresolved-points", Count: count, Where: where,
-			Text: fmt.Sprintf("%d of %d critical points are not resolved by this mesh; their index is right, their place and "+
-				"type are doubtful", count, len(s.Points)),
-		})
-	}
 }

@@ -31,7 +31,7 @@ func (s *Skeleton) LedgerAt(floor float64) Ledger {
 		l.Parts[i].BoundaryTerm = p.BoundaryTerm
 	}
 	for i := range s.Points {
-		if p := &s.Points[i]; p.Robustness >= floor {
+		if p := &s.Points[i]; !(p.Robustness < floor) {
 			l.Parts[p.Part].add(p)
 		}
 	}

@@ -171,49 +171,6 @@ func (p *placer) cornerOf(s *seed, v int32) field.Loc {
 	return field.Loc{Tri: s.tris[0], Bary: [3]float64{1. / 3, 1. / 3, 1. / 3}}
 }
 
-// linear returns the zero of the linear field in triangle t, moved into the triangle, and the Jacobian in the flat
-// frame.
-func (p *placer) linear(t int32) (bary [3]float64, j [2][2]float64) {
-	f := p.c.f
-	x, u := f.Flat(t), f.CornerTau(t)
-	area := x[1].Sub(x[0]).Cross(x[2].Sub(x[0]))
-	if area > 0 {
-		// Gradients of the barycentric weights.
-		for k := range 3 {
-			g := x[(k+2)%3].Sub(x[(k+1)%3]).Left().Scale(1 / area)
-			j[0][0] += float64(u[k].X * g.X)
-			j[0][1] += float64(u[k].X * g.Y)
-			j[1][0] += float64(u[k].Y * g.X)
-			j[1][1] += float64(u[k].Y * g.Y)
-		}
-	}
-	// The weights at the zero are as the areas that pairs of vectors span.
-	scale := math.Max(u[0].Norm(), math.Max(u[1].Norm(), u[2].Norm()))
-	if scale == 0 {
-		return [3]float64{1. / 3, 1. / 3, 1. / 3}, j
-	}
-	sum := 0.0
-	for k := range 3 {
-		a, b := u[(k+1)%3].Scale(1/scale), u[(k+2)%3].Scale(1/scale)
-		bary[k] = a.Cross(b)
-		sum += bary[k]
-	}
-	for k := range 3 {
-		bary[k] /= sum
-		if !(bary[k] >= 0) {
-			bary[k] = 0
-		}
-	}
-	total := bary[0] + bary[1] + bary[2]
-	if !(total > 0) || math.IsInf(total, 1) {
-		return [3]float64{1. / 3, 1. / 3, 1. / 3}, j
-	}
-	for k := range 3 {
-		bary[k] /= total
-	}
-	return bary, j
-}
-
 // addNote appends a remark.
 func addNote(pt *Point, note string) {
 	if !strings.Contains(pt.Note, note) {
