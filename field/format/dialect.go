@@ -158,7 +158,8 @@ func rowDialect(row, header string) (dialect, bool) {
 	if len(splitHeader(header, ' ')) == len(strings.Fields(row)) && !strings.Contains(header, ",") {
 		try = append(try, dialect{sep: ' ', point: '.'}, dialect{sep: ' ', point: ','})
 	}
-	try = append(try, dialect{sep: ',', point: '.'}, dialect{sep: ' ', point: '.'})
+	try = append(try, dialect{sep: ',', point: '.'}, dialect{sep: ' ', point: '.'},
+		dialect{sep: ',', point: ','}) // numbers in quotes
 	for _, d := range try {
 		cells := splitCells(row, d.sep)
 		if len(cells) < 3 || len(cells) > maxColumns {

@@ -7,6 +7,8 @@ import (
 	"encoding/json"
 	"fmt"
 	"math"
+	"os"
+	"path/filepath"
 	"strings"
 	"testing"
 	"testing/fstest"
@@ -222,6 +224,32 @@ func TestGLTFExternalBuffers(t *testing.T) {
 	if _, err := format.Read("x.gltf", doc("secret"), format.Options{}); err == nil || !strings.Contains(err.Error(),
 		"convert the run") {
 		t.Errorf("without a folder: %v", err)
+	}
+}
+
+// A link beside the document that leads out of its folder is not followed by a folder opened as a root.
+func TestGLTFLinksDoNotLeadOut(t *testing.T) {
+	all := bytes.Join([][]byte{cornerBytes, tauBytes, append(bytes.Clone(indexBytes), 0, 0)}, nil)
+	outside, inside := t.TempDir(), t.TempDir()
+	if err := os.WriteFile(filepath.Join(outside, "secret.bin"), all, 0o600); err != nil {
+		t.Fatal(err)
+	}
+	if err := os.WriteFile(filepath.Join(inside, "own.bin"), all, 0o600); err != nil {
+		t.Fatal(err)
+	}
+	if err := os.Symlink(filepath.Join(outside, "secret.bin"), filepath.Join(inside, "link.bin")); err != nil {
+		t.Skipf("no links here: %v", err)
+	}
+	root, err := os.OpenRoot(inside)
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer root.Close()
+	for name, good := range map[string]bool{"own.bin": true, "link.bin": false} {
+		doc := gltfOf(object{"buffers": array{object{"byteLength": len(all), "uri": name}}}, cornerBytes, tauBytes, indexBytes)
+		if _, err := format.Read("x.gltf", doc, format.Options{Files: root.FS()}); (err == nil) != good {
+			t.Errorf("%s: %v", name, err)
+		}
 	}
 }
 

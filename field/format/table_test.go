@@ -45,6 +45,7 @@ func TestTableDialects(t *testing.T) {
 		"preamble":                "[Name]\nwall\n\n[Data]\n" + gridTable(plain, ",", ".", "\n"),
 		"quoted header":           gridTable(`"x","y","z","tau_x","tau_y","tau_z","p"`, ",", ".", "\n"),
 		"quoted cells":            gridTable(plain, `","`, ".", "\n")[len(plain)+1:],
+		"quoted decimal commas":   gridTable(plain, `","`, ",", "\n")[len(plain)+1:],
 		"separators at line ends": gridTable(plain, ",", ".", ",\n"),
 		"blank and comment lines": strings.ReplaceAll(gridTable(plain, ",", ".", "\n"), "2.5,", "2.5,") + "\n# end\n\n",
 		"leading blanks":          strings.ReplaceAll(gridTable(with(" "), " ", ".", "\n"), "\n", "\n  "),
@@ -54,7 +55,7 @@ func TestTableDialects(t *testing.T) {
 		"units in a line":         gridTable(plain+"\n[-],[-],[-],[Pa],[Pa],[Pa],[Pa]", ",", ".", "\n"),
 		"an empty row":            gridTable(plain, ",", ".", "\n") + ",,,,,,\n",
 	} {
-		if name == "quoted cells" {
+		if strings.HasPrefix(name, "quoted") && name != "quoted header" {
 			rows := strings.Split(strings.TrimSpace(text), "\n")
 			text = plain + "\n\"" + strings.Join(rows, "\"\n\"") + "\"\n"
 		}
