@@ -246,7 +246,8 @@ func TestGLTFLinksDoNotLeadOut(t *testing.T) {
 	}
 	defer root.Close()
 	for name, good := range map[string]bool{"own.bin": true, "link.bin": false} {
-		doc := gltfOf(object{"buffers": array{object{"byteLength": len(all), "uri": name}}}, cornerBytes, tauBytes, indexBytes)
+		doc := gltfOf(object{"buffers": array{object{"byteLength": len(all), "uri": name}}},
+			cornerBytes, tauBytes, indexBytes)
 		if _, err := format.Read("x.gltf", doc, format.Options{Files: root.FS()}); (err == nil) != good {
 			t.Errorf("%s: %v", name, err)
 		}

@@ -17,8 +17,8 @@ func Read(name string, data []byte, opt Options) (field.Raw, error) {
 	return raw, err
 }
 
-// readRun also returns what the file and its surface say about the flow. It clears the unit in opt where it was used up:
-// a matched run has the surface's positions.
+// readRun also returns what the file and its surface say about the flow. It clears the unit in opt where it was used
+// up: a matched run has the surface's positions.
 func readRun(name string, data []byte, opt *Options) (field.Raw, hints, error) {
 	data, err := unpack(name, data)
 	if err != nil {

@@ -48,7 +48,8 @@ func attach(src source, raw *field.Raw, h hints, opt Options) (hints, error) {
 	scatter(raw, &surface, m.row, what == "faces")
 	note(raw, field.Note, "matched-surface", m.matched, "",
 		"%d of %d rows were matched to the %s of %s; the median distance is %.2g "+
-			"of the local size, the largest %.2g", m.used, len(m.rowUsed), what, baseName(opt.SurfaceName), fit, slices.Max(m.distances))
+			"of the local size, the largest %.2g", m.used, len(m.rowUsed), what, baseName(opt.SurfaceName), fit,
+		slices.Max(m.distances))
 	if holes := len(targets.place) - m.matched; holes > 0 {
 		note(raw, field.Doubtful, "unmatched-surface", holes, pointPlace(targets.place[m.firstHole]),
 			"%d of the %d %s of the surface have no row of the table and are holes", holes, len(targets.place), what)

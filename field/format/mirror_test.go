@@ -75,8 +75,10 @@ func TestMirrorCompletesAHalf(t *testing.T) {
 		dust    float64
 		opt     string
 		asFaces bool
-	}{{"y", 0, 0, "y", false}, {"moved", 2.5, 0, "y=2.5", false}, {"dust", 0, 1e-7, "y", false}, {"moved mesh", 0, 2e-3, "y", false}, {"faces", 0, 0, "Y = 0",
-		true}} {
+	}{
+		{"y", 0, 0, "y", false}, {"moved", 2.5, 0, "y=2.5", false}, {"dust", 0, 1e-7, "y", false},
+		{"moved mesh", 0, 2e-3, "y", false}, {"faces", 0, 0, "Y = 0", true},
+	} {
 		raw := halfSphere(c.at, c.dust)
 		if c.asFaces {
 			for _, tri := range raw.Tris {

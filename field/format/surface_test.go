@@ -54,7 +54,8 @@ func TestNamesDoNotMatter(t *testing.T) {
 		}
 	}
 	raw.Name = ""
-	for file, want := range map[string]string{"a/b/wing.ply.gz": "wing", `C:\runs\wing.v2.ply`: "wing.v2", ".hidden": ".hidden"} {
+	for file, want := range map[string]string{"a/b/wing.ply.gz": "wing", `C:\runs\wing.v2.ply`: "wing.v2",
+		".hidden": ".hidden"} {
 		if f := load(t, file, plyOf(t, raw), format.Options{}); f.Name != want {
 			t.Errorf("%s is called %q", file, f.Name)
 		}

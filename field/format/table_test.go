@@ -73,7 +73,8 @@ func TestTableDialects(t *testing.T) {
 
 // A first row without values is a row, not a header; it is a hole of the run.
 func TestTableBeginsWithAGap(t *testing.T) {
-	text := strings.Replace(gridTable("x,y,z,tau_x,tau_y,tau_z,p", ",", ".", "\n"), "1.5,-2,0,100.25", "nan,,NaN,-1.#IND", 1)
+	text := strings.Replace(gridTable("x,y,z,tau_x,tau_y,tau_z,p", ",", ".", "\n"), "1.5,-2,0,100.25",
+		"nan,,NaN,-1.#IND", 1)
 	f := load(t, "t.csv", []byte(text), format.Options{})
 	if len(f.Tris) != 12-2 || !hasFinding(f.Findings, "holes", 2) {
 		t.Errorf("%d triangles, %+v", len(f.Tris), f.Findings)
