@@ -1,6 +1,9 @@
 package format
 
-import "strings"
+import (
+	"slices"
+	"strings"
+)
 
 // The trade's spellings per quantity, reduced by normal, the preferred first. A user's own names win over all of them.
 var (
@@ -12,8 +15,9 @@ var (
 		"t"}
 	cfNames = []string{"cf", "coefskinfriction", "skinfrictioncoefficient", "skinfrictioncoef", "skinfrictioncoeff",
 		"frictioncoefficient", "frictioncoeff", "cfmean", "meancf"}
-	normalNames = []string{"n", "normal", "normals", "facenormal", "unitnormal", "surfacenormal"}
-	pNames      = []string{"p", "pressure", "staticpressure", "pstatic", "prel", "pgauge", "pressuregauge",
+	velocityNames = []string{"velocity", "u", "vel", "v", "velocityvector", "wallvelocity", "nearwallvelocity"}
+	normalNames   = []string{"n", "normal", "normals", "facenormal", "unitnormal", "surfacenormal"}
+	pNames        = []string{"p", "pressure", "staticpressure", "pstatic", "prel", "pgauge", "pressuregauge",
 		"gaugepressure", "relativepressure", "wallpressure", "surfacepressure", "pwall", "pmean", "meanpressure",
 		"pressuremean", "absolutepressure", "pabs"}
 	cpNames = []string{"cp", "coefpressure", "pressurecoefficient", "pressurecoef", "pressurecoeff",
@@ -30,6 +34,7 @@ type columns struct {
 	tauName          string // base name of tau, as found
 	coefficient      bool   // tau is a skin-friction coefficient
 	contractTau      bool   // tau has the contract's own name, which means Pa
+	velocity         bool   // tau is a velocity, as the user's name tells
 	atFaces          bool   // names tell that rows are face centres
 	xUnit, tUnit, pU string // bracketed units, "" where not told
 
@@ -108,10 +113,9 @@ func (c *columns) findTau(src source, name string) error {
 	} else if c.tau, _ = c.vector([]string{normal(name)}, 2); c.tau[0] < 0 {
 		return c.unknown(src, "--tau", name)
 	}
-	for _, base := range cfNames {
-		for _, s := range c.labels[c.tau[0]].splits {
-			c.coefficient = c.coefficient || s.base == base
-		}
+	for _, s := range c.labels[c.tau[0]].splits {
+		c.coefficient = c.coefficient || slices.Contains(cfNames, s.base)
+		c.velocity = c.velocity || slices.Contains(velocityNames, s.base)
 	}
 	return nil
 }

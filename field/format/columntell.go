@@ -29,11 +29,27 @@ func (c *columns) tell(raw *field.Raw) {
 	} else {
 		add("tau", []string{"tau_x", "tau_y", "tau_z"}, c.tau[:]...)
 	}
+	if c.velocity && plainUnit(c.tUnit) != "m/s" { // the unit is told elsewhere
+		tellVelocity(raw)
+	}
 	add("p", []string{"p"}, c.p)
 	add("cp", []string{"cp"}, c.cp)
 	if len(say) > 0 {
 		note(raw, field.Note, "matched-names", len(say), "", "names were matched: %s", strings.Join(say, "; "))
 	}
+}
+
+func tellVelocity(raw *field.Raw) {
+	note(raw, field.Doubtful, "velocity-tau", 0, "",
+		"the vector is a velocity, not a stress: its direction near the wall and its critical points hold, its size does not")
+}
+
+// velocityHint is a remedy for files without a known tau that have a velocity.
+func (c *columns) velocityHint() string {
+	if v, base := c.vector(velocityNames, 3); v[0] >= 0 {
+		return "name the vector with --tau; the velocity will do if it is that of the cells at the wall: --tau " + base
+	}
+	return "name the columns of the vector with --tau"
 }
 
 // tellUnused says which columns of a table nothing was taken from.

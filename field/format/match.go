@@ -105,6 +105,9 @@ func sameUnit(src source, raw, surface *field.Raw, opt Options) error {
 			return src.fail("", "known are m, mm, cm, in, ft", "there is no unit of length %s (--unit)", quote(opt.Unit))
 		}
 		own = plainUnit(opt.Unit)
+		if told := raw.Units.Length; told != "" && lengths[told] != lengths[own] {
+			note(raw, field.Doubtful, "unit-overruled", 0, "", "the table says lengths are in %s; --unit %s was used", told, own)
+		}
 	}
 	switch {
 	case surface.Units.Length == "":

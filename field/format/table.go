@@ -83,7 +83,7 @@ func (t *tableReader) open(opt Options) error {
 		return t.fail(fmt.Sprintf("line %d", t.dialect.line), "name them x y z in the header", "no columns are positions")
 	}
 	if t.tau[0] < 0 && t.p < 0 && t.cp < 0 {
-		return t.fail("header", "name the columns of the vector with --tau",
+		return t.fail("header", t.velocityHint(),
 			"no column is known as wall shear stress or pressure; there are: %s", quoteList(t.header))
 	}
 	return nil

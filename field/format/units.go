@@ -86,8 +86,7 @@ func tauUnit(raw *field.Raw, unit string, coefficient, contract bool) string {
 	case plain == "-" || plain == "1":
 		return "1"
 	case plain == "m/s":
-		note(raw, field.Doubtful, "velocity-tau", 0, "",
-			"the vector is a velocity (m/s), not a stress: directions and points hold near the wall, magnitudes do not")
+		tellVelocity(raw)
 		return "m/s"
 	case !known:
 		note(raw, field.Doubtful, "unknown-unit", 0, "", "the unit of tau %s is not known; its numbers are kept", quote(unit))
