@@ -24,13 +24,24 @@ func (c *count) findRobustness(ctx context.Context) error {
 	if err != nil {
 		return err
 	}
-	for i, e := range edges {
-		if i%faceBlock == 0 && ctx.Err() != nil {
-			return ctx.Err()
+	for i, check := 0, 0; i < len(edges); {
+		if i >= check {
+			if ctx.Err() != nil {
+				return ctx.Err()
+			}
+			check = i + faceBlock
 		}
-		a, b := c.set.union(e.half/3, c.f.Twin[e.half]/3)
-		if a != b && g.merge(a, b, math.Float64frombits(e.key)) {
-			return ctx.Err()
+		// A vertex with less |tau| than its neighbours joins several triangles at one level: all of them before sums are
+		// looked at.
+		key := edges[i].key
+		for ; i < len(edges) && edges[i].key == key; i++ {
+			h := edges[i].half
+			if a, b := c.set.union(h/3, c.f.Twin[h]/3); a != b {
+				g.join(a, b)
+			}
+		}
+		if g.settle(math.Float64frombits(key)) {
+			break
 		}
 	}
 	return ctx.Err()
@@ -75,6 +86,7 @@ type groups struct {
 	last  []int32
 	next  []int32 // the seed that follows in its group; -1 at the end
 	alive []int   // number of groups per part
+	grown []int32 // roots of the components whose groups were joined at this level
 	open  int     // merges that may still cancel something: groups less one, over all parts
 }
 
@@ -101,28 +113,39 @@ func newGroups(c *count) *groups {
 	return g
 }
 
-// merge joins the groups of the components a (whose root stays) and b at the given level, and tells whether no merge can
-// cancel anything any more.
-func (g *groups) merge(a, b int32, level float64) (done bool) {
+// join joins the groups of the components a (whose root stays) and b.
+func (g *groups) join(a, b int32) {
 	i, j := g.of[a], g.of[b]
 	switch {
 	case j < 0:
-		return false
+		return
 	case i < 0:
 		g.of[a] = j
-		return false
+		return
 	}
 	g.drop(a)
 	g.sum[i] += g.sum[j]
 	g.next[g.last[i]] = g.first[j]
 	g.last[i] = g.last[j]
-	if g.sum[i] == 0 {
+	g.grown = append(g.grown, a)
+}
+
+// settle cancels the groups that were joined at this level and sum to zero, and tells whether nothing can be cancelled
+// any more.
+func (g *groups) settle(level float64) (done bool) {
+	for _, t := range g.grown {
+		root := g.c.set.find(t)
+		i := g.of[root]
+		if i < 0 || g.sum[i] != 0 {
+			continue
+		}
 		for s := g.first[i]; s >= 0; s = g.next[s] {
 			g.c.seeds[s].robust = level
 		}
-		g.of[a] = -1
-		g.drop(a)
+		g.of[root] = -1
+		g.drop(root)
 	}
+	g.grown = g.grown[:0]
 	return g.open == 0
 }
 

@@ -135,7 +135,12 @@ func robustnessBy(s *topology.Skeleton, level func(h int32) float64) []float64 {
 		robust[i] = math.Inf(1)
 		points[p.Patch[0]] = append(points[p.Patch[0]], i)
 	}
-	for _, e := range edges {
+	var joined []int // labels that grew at this level
+	for k, e := range edges {
+		if k > 0 && e.x != edges[k-1].x {
+			cancel(s, robust, points, joined, edges[k-1].x)
+			joined = joined[:0]
+		}
 		a, b := label[e.h/3], label[f.Twin[e.h]/3]
 		if a == b {
 			continue
@@ -149,16 +154,24 @@ func robustnessBy(s *topology.Skeleton, level func(h int32) float64) []float64 {
 		tris[a] = append(tris[a], tris[b]...)
 		points[a] = append(points[a], points[b]...)
 		tris[b], points[b] = nil, nil
+		joined = append(joined, a)
+	}
+	cancel(s, robust, points, joined, edges[len(edges)-1].x)
+	return robust
+}
+
+// cancel gives the points of the labels that sum to zero the level x.
+func cancel(s *topology.Skeleton, robust []float64, points [][]int, labels []int, x float64) {
+	for _, a := range labels {
 		sum := 0
 		for _, i := range points[a] {
 			sum += s.Points[i].Index
 		}
 		if sum == 0 {
 			for _, i := range points[a] {
-				robust[i] = e.x
+				robust[i] = x
 			}
 			points[a] = nil
 		}
 	}
-	return robust
 }
