@@ -178,15 +178,25 @@ func (pt *Point) setJacobian(j [2][2]float64, tau, length float64, n r3.Vec, axe
 	unit := finite(tau / length)
 	for i := range 2 {
 		for k := range 2 {
+			j[i][k] = tidy(j[i][k])
 			pt.Jacobian[i][k] = finite(float64(j[i][k] * unit))
 		}
 	}
 	for i, e := range eigenvalues(j) {
-		pt.Eigenvalues[i] = [2]float64{finite(float64(e[0] * unit)), finite(float64(e[1] * unit))}
+		pt.Eigenvalues[i] = [2]float64{finite(float64(tidy(e[0]) * unit)), finite(float64(tidy(e[1]) * unit))}
 	}
-	pt.Trace = finite(float64((j[0][0] + j[1][1]) * unit))
+	pt.Trace = finite(float64(tidy(j[0][0]+j[1][1]) * unit))
 	pt.Determinant = finite(float64(float64(det(j)*unit) * unit))
 	pt.Normal, pt.Frame = n, axes
+}
+
+// tidy makes zero of what rounding leaves of a zero, in units of the patch: a result of 1e-17 would only puzzle.
+func tidy(x float64) float64 {
+	const rounding = 1e-13
+	if math.Abs(x) < rounding {
+		return 0
+	}
+	return x
 }
 
 // finite keeps numbers within the range that results can hold: data of any size must not give infinities.

@@ -120,6 +120,52 @@ func TestLedgerIsATheorem(t *testing.T) {
 	})
 }
 
+// The levels name every point that has a robustness once, in groups that sum to zero, and predict every ledger.
+func TestLevels(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		mesh := rapid.SampledFrom(meshes).Draw(t, "mesh")
+		raw := mesh.raw()
+		fill(&raw, rapid.Uint64().Draw(t, "seed"), rapid.IntRange(0, kinds-1).Draw(t, "kind"))
+		f, err := field.Build(raw)
+		if err != nil {
+			t.Fatal(err)
+		}
+		s := find(t, f, topology.Options{})
+		left := len(s.Points)
+		seen := map[int]bool{}
+		last := 0.0
+		for _, l := range s.Levels() {
+			sum := 0.0
+			for _, i := range l.Points {
+				p := s.Points[i]
+				if seen[i] || p.Robustness != l.Robustness {
+					t.Fatalf("%s, robustness %g, at level %g", p.ID, p.Robustness, l.Robustness)
+				}
+				seen[i] = true
+				w := float64(p.Index)
+				if p.Half {
+					w /= 2
+				}
+				sum += w
+			}
+			if sum != 0 || l.Robustness < last {
+				t.Fatalf("level %+v sums to %g, after level %g", l, sum, last)
+			}
+			last = l.Robustness
+			left -= len(l.Points)
+		}
+		for i, p := range s.Points {
+			if !seen[i] && !math.IsInf(p.Robustness, 1) {
+				t.Fatalf("%s with robustness %g is on no level", p.ID, p.Robustness)
+			}
+		}
+		l := s.LedgerAt(math.Inf(1))
+		if n := l.Nodes + l.Foci + l.Saddles + l.Degenerate + l.HalfNodes + l.HalfSaddles + l.HalfDegenerate; n != left {
+			t.Fatalf("%d points are left above all levels, want %d", n, left)
+		}
+	})
+}
+
 // checkLedger compares the ledger with the mesh's topology, and the term with the count of tangencies.
 func checkLedger(t rapid.TB, s *topology.Skeleton) {
 	t.Helper()

@@ -18,6 +18,7 @@ type seed struct {
 	mirror  *stretch   // a half point's plane of symmetry
 	knot    *field.Loc // the place of a zero of second order that the mesh took apart; nil for other points
 	robust  float64    // as a share of MaxTau
+	group   int32      // of the seeds that cancel together; -1 for none
 }
 
 // weight is the seed's share in sums, in halves.

@@ -62,7 +62,7 @@ func (p *placer) place(s *seed) Point {
 	loc := p.start(s)
 	pt := Point{
 		Index: s.index, Half: s.half, Part: f.Part[loc.Tri], Loc: loc, Resolved: true, Patch: s.tris,
-		Robustness: p.c.level(s.robust), Size: p.meanEdge(loc.Tri),
+		Robustness: p.c.level(s.robust), group: s.group, Size: p.meanEdge(loc.Tri),
 	}
 	why := p.byFit(s, &pt)
 	if why != "" {

@@ -14,7 +14,7 @@ import (
 // The rim takes no part: a point is cancelled by other points only.
 func (c *count) findRobustness(ctx context.Context) error {
 	for i := range c.seeds {
-		c.seeds[i].robust = math.Inf(1)
+		c.seeds[i].robust, c.seeds[i].group = math.Inf(1), -1
 	}
 	g := newGroups(c)
 	if g.open == 0 {
@@ -140,7 +140,7 @@ func (g *groups) settle(level float64) (done bool) {
 			continue
 		}
 		for s := g.first[i]; s >= 0; s = g.next[s] {
-			g.c.seeds[s].robust = level
+			g.c.seeds[s].robust, g.c.seeds[s].group = level, i
 		}
 		g.of[root] = -1
 		g.drop(root)

@@ -192,6 +192,8 @@ type Point struct {
 	Note       string  // why, if not Resolved; or what is special about the point
 	Size       float64 // mean length of the edges around the point: the scale of resolution
 	Patch      []int32 // the triangles that share the point's index, ascending; one for an ordinary point
+
+	group int32 // of the points that cancel together; -1 for none
 }
 
 // Line is a separatrix, a closed orbit or an open separation or attachment line.
