@@ -27,9 +27,11 @@ var allowed = map[string][]string{
 		"field", "field/r3", "field/trace", "field/topology", "field/study", "field/format", "field/exact", "render",
 		"wasm/session",
 	},
-	"web": {},
+	"web":           {"testdata/demo"},
+	"testdata/demo": {},
 	"cmd/shearprint": {
 		"field", "field/r3", "field/trace", "field/topology", "field/study", "field/format", "field/exact", "render", "web",
+		"testdata/demo",
 	},
 }
 
