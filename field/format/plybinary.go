@@ -50,7 +50,7 @@ func (r *plyReader) binaryVertices(body []byte, order binary.ByteOrder) {
 	e := r.vertex
 	r.allocatePoints(e.count)
 	column := func(col int, set func(i int, x float64)) {
-		if col < 0 {
+		if col < 0 || e.count == 0 {
 			return
 		}
 		p := e.props[col]
