@@ -12,8 +12,8 @@ const (
 	// turn of the spiral changes its radius by a factor of e^(2 pi 30): no reading of a surface could tell it from a node,
 	// and star nodes must not become foci by the errors of a fit.
 	swirlShare = 1. / 30
-	// traceShare is the trace, as a share of the norm, below which a point has no sense: the spirals of a focus then change
-	// by 0.3 per cent in a turn, less than any computation of a flow is good for.
+	// traceShare is the trace, as a share of the norm, below which a point has no sense: the spirals of a focus then
+	// change by 0.3 per cent in a turn, less than any computation of a flow is good for.
 	traceShare = 1e-3
 	// centreShare is the trace, as a share of the norm, above which a focus is no centre even where the error of the trace
 	// is larger still: it then is a focus whose sense is unknown. Below, spirals change by less than a tenth in a turn.

@@ -65,11 +65,11 @@ type Verdict struct {
 // Decide balances a reading made by eye.
 //
 // Whole surfaces: an isolated body has nodes + foci - saddles = 2 (Davey 1961, Lighthill 1963), a body on a wall 0, a
-// hole through either takes 2 away (Hunt, Abell, Peterka and Woo, Journal of Fluid Mechanics 86, 1978), a patch has its
-// Euler characteristic + (interior - exterior tangencies)/2 (Poincare 1885). With half points and without Section the
-// reading is of one half of a symmetric surface, and half of that is expected. With Section it is of the streamlines in
-// a plane that cuts bodies and walls, where Hunt and his colleagues expect 1 - n: -1 through an isolated body, 0 through
-// a wall with or without a body on it.
+// hole through either takes 2 away (Hunt, Abell, Peterka and Woo, Journal of Fluid Mechanics 86, 1978), a patch has
+// its Euler characteristic + (interior - exterior tangencies)/2 (Poincare 1885). With half points and without Section
+// the reading is of one half of a symmetric surface, and half of that is expected. With Section it is of the
+// streamlines in a plane that cuts bodies and walls, where Hunt and his colleagues expect 1 - n: -1 through an
+// isolated body, 0 through a wall with or without a body on it.
 func Decide(h Hand) Verdict {
 	v := h.byRule(h.Section)
 	if !v.Balanced && h.HalfNodes+h.HalfSaddles > 0 {
@@ -170,7 +170,8 @@ func missing(gap float64) string {
 		if n == 1 {
 			return fmt.Sprintf("one %s is missing, or one %s too many was read", what, other)
 		}
-		return fmt.Sprintf("%d more of the kind %s are missing, or %d too many of the kind %s were read", int(n), what, int(n), other)
+		return fmt.Sprintf("%d more of the kind %s are missing, or %d too many of the kind %s were read", int(n), what, int(n),
+			other)
 	}
 	return fmt.Sprintf("%s of the kind %s is missing (half points count one half), or as much of the kind %s is too many",
 		number(n), what, other)

@@ -11,10 +11,10 @@ import (
 	"shearprint/field/topology"
 )
 
-// Published rules: isolated body N - S = 2 (Davey 1961, Lighthill 1963); Hunt, Abell, Peterka and Woo 1978: obstacle on a
-// surface 0, obstacle with a hole through it -2, plane section 1 - n; Tobak and Peake 1982 (list from memory): torus 0,
-// section through a body -1, through a surface that runs on 0. Junction of two pipes -1 (Hunt et al.): a patch with two
-// holes that the flow crosses one way each.
+// Published rules: isolated body N - S = 2 (Davey 1961, Lighthill 1963); Hunt, Abell, Peterka and Woo 1978: obstacle
+// on a surface 0, obstacle with a hole through it -2, plane section 1 - n; Tobak and Peake 1982 (list from memory):
+// torus 0, section through a body -1, through a surface that runs on 0. Junction of two pipes -1 (Hunt et al.): a
+// patch with two holes that the flow crosses one way each.
 func TestDecide(t *testing.T) {
 	type hand = topology.Hand
 	for _, c := range []struct {
@@ -32,15 +32,18 @@ func TestDecide(t *testing.T) {
 		{"arch on a wall", hand{Body: topology.OnWall, Holes: 1, Nodes: 6, Saddles: 8}, -2, -2, ""},
 		{"junction of two pipes", hand{Body: topology.Patch, Rim: topology.OneWay, Holes: 2, Saddles: 1}, -1, -1, ""},
 		{"window in a stream", hand{Body: topology.Patch}, 0, 0, ""},
-		{"window, tangencies counted", hand{Body: topology.Patch, Rim: topology.Counted, Interior: 2, Exterior: 2, Nodes: 1}, 1, 1, ""},
+		{"window, tangencies counted",
+			hand{Body: topology.Patch, Rim: topology.Counted, Interior: 2, Exterior: 2, Nodes: 1}, 1, 1, ""},
 		{"section through a cylinder", hand{Section: true, HalfSaddles: 2}, -1, -1, ""},
 		{"section through a bump on a wall", hand{Body: topology.OnWall, Section: true, HalfSaddles: 2, Nodes: 1}, 0, 0, ""},
 		{"half of a sphere", hand{HalfNodes: 2}, 1, 1, ""},
-		{"half of a body on a wall", hand{Body: topology.OnWall, HalfNodes: 1, HalfSaddles: 2}, -0.5, 0, "0.5 of the kind node"},
+		{"half of a body on a wall", hand{Body: topology.OnWall, HalfNodes: 1, HalfSaddles: 2}, -0.5, 0,
+			"0.5 of the kind node"},
 		{"two saddles unseen", hand{Nodes: 4}, 4, 2, "2 more of the kind saddle are missing"},
 	} {
 		v := topology.Decide(c.hand)
-		if v.Sum != c.sum || v.Expected != c.want || v.Balanced != (c.missing == "") || !strings.Contains(v.Missing, c.missing) {
+		if v.Sum != c.sum || v.Expected != c.want || v.Balanced != (c.missing == "") ||
+			!strings.Contains(v.Missing, c.missing) {
 			t.Errorf("%s: %+v, want sum %g, expected %g, missing %q", c.name, v, c.sum, c.want, c.missing)
 		}
 		if v.Rule == "" {
@@ -107,7 +110,9 @@ func TestWords(t *testing.T) {
 			t.Errorf("%s gives %+v (%v)", text, out, err)
 		}
 	}
-	text, _ := json.Marshal(all{topology.Saddle, topology.Separation, topology.SeparationLine, topology.Horn, topology.OnWall})
+	text, _ := json.Marshal(all{
+		topology.Saddle, topology.Separation, topology.SeparationLine, topology.Horn, topology.OnWall,
+	})
 	if want := `{"T":"saddle","S":"separation","K":"separation","L":"horn","B":"on-wall"}`; string(text) != want {
 		t.Errorf("%s, want %s", text, want)
 	}

@@ -1,13 +1,13 @@
-// Package topology reads the surface pattern of wall shear: its critical points, the lines that separate and attach, and
-// the ledger that balances the points against what the topology of the surface demands.
+// Package topology reads the surface pattern of wall shear: its critical points, the lines that separate and attach,
+// and the ledger that balances the points against what the topology of the surface demands.
 //
 // # Counting
 //
-// Along every edge tau turns by an angle, measured against the parallel transport between the charts of the edge's ends.
-// The three angles of a triangle and the triangle's curvature add up to 2 pi times an integer, the triangle's index;
-// over a closed part the indices add up to the Euler characteristic, for any field on any mesh. Triangles around exact
-// zeros are merged and share one index. On a surface with rims the sum is the Euler characteristic plus what tau turns
-// against the rims, which is half of (interior - exterior tangencies).
+// Along every edge tau turns by an angle, measured against the parallel transport between the charts of the edge's
+// ends. The three angles of a triangle and the triangle's curvature add up to 2 pi times an integer, the triangle's
+// index; over a closed part the indices add up to the Euler characteristic, for any field on any mesh. Triangles
+// around exact zeros are merged and share one index. On a surface with rims the sum is the Euler characteristic plus
+// what tau turns against the rims, which is half of (interior - exterior tangencies).
 //
 // # Half models
 //

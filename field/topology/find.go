@@ -14,8 +14,8 @@ import (
 // pointBlock is the number of points that one goroutine places at a time.
 const pointBlock = 64
 
-// Find returns the critical points of f with their ledger, and the lines if asked for. The only error is that of ctx: any
-// field on any mesh has an answer.
+// Find returns the critical points of f with their ledger, and the lines if asked for. The only error is that of ctx:
+// any field on any mesh has an answer.
 func Find(ctx context.Context, f *field.Field, opt Options) (*Skeleton, error) {
 	progress := opt.Progress
 	if progress == nil {
@@ -98,8 +98,8 @@ func compareVec(a, b r3.Vec) int {
 	return cmp.Or(cmp.Compare(a.X, b.X), cmp.Compare(a.Y, b.Y), cmp.Compare(a.Z, b.Z))
 }
 
-// closeEdges is the distance in mean edges below which two points cannot be told from one: the fit of each would use the
-// other's vertices.
+// closeEdges is the distance in mean edges below which two points cannot be told from one: the fit of each would use
+// the other's vertices.
 const closeEdges = 3
 
 // tellClose marks the points that have another within closeEdges along the surface.

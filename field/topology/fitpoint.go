@@ -69,8 +69,8 @@ func (p *placer) byFit(s *seed, pt *Point) string {
 	return ""
 }
 
-// core returns the triangles around which the point is fitted, and the number of rings: two around a triangle or a small
-// patch, one around the fan of a zero vertex, so that a symmetric place has symmetric samples.
+// core returns the triangles around which the point is fitted, and the number of rings: two around a triangle or a
+// small patch, one around the fan of a zero vertex, so that a symmetric place has symmetric samples.
 func (p *placer) core(s *seed, pt *Point) ([]int32, int32) {
 	const small = 16 // triangles; larger patches have no linear part to be fitted
 	switch {
@@ -82,8 +82,8 @@ func (p *placer) core(s *seed, pt *Point) ([]int32, int32) {
 	return s.tris, fitRings
 }
 
-// baseAt returns the tangent plane at loc: perpendicular to the interpolated normal, or to the triangle's where a crease
-// spoils the other; in the plane of symmetry for a half point.
+// baseAt returns the tangent plane at loc: perpendicular to the interpolated normal, or to the triangle's where a
+// crease spoils the other; in the plane of symmetry for a half point.
 func (p *placer) baseAt(s *seed, loc field.Loc) base {
 	f := p.c.f
 	b := base{origin: f.Position(loc), n: f.Normal(loc)}
@@ -109,7 +109,9 @@ func (p *placer) samples(s *seed, b *base, vertices []int32) (rows [][5]float64,
 	f := p.c.f
 	weight = 1
 	add := func(d, tau r3.Vec) {
-		rows = append(rows, [5]float64{d.Dot(b.axes[0]), d.Dot(b.axes[1]), tau.Dot(b.axes[0]), tau.Dot(b.axes[1]), d.Dot(b.n)})
+		rows = append(rows, [5]float64{
+			d.Dot(b.axes[0]), d.Dot(b.axes[1]), tau.Dot(b.axes[0]), tau.Dot(b.axes[1]), d.Dot(b.n),
+		})
 	}
 	for _, v := range vertices {
 		d := f.Points[v].Sub(b.origin)

@@ -11,11 +11,12 @@ import (
 	"shearprint/field/topology"
 )
 
-// FuzzFind takes any bytes for a surface and a field: whatever Build accepts has a balanced ledger at every floor, finite
-// numbers, and the same points when asked again.
+// FuzzFind takes any bytes for a surface and a field: whatever Build accepts has a balanced ledger at every floor,
+// finite numbers, and the same points when asked again.
 func FuzzFind(f *testing.F) {
 	f.Add([]byte{4, 0, 1, 2, 0, 3, 1, 0, 2, 3, 1, 3, 2, 10, 20, 30, 40, 50, 60, 70, 80, 90, 15, 25, 35, 1, 2, 3, 4, 5, 6})
-	f.Add([]byte{9, 0, 1, 3, 1, 4, 3, 1, 2, 4, 2, 5, 4, 3, 4, 6, 4, 7, 6, 4, 5, 7, 5, 8, 7, 0, 0, 0, 0, 0, 0, 0, 0, 0, 255, 128})
+	f.Add([]byte{9, 0, 1, 3, 1, 4, 3, 1, 2, 4, 2, 5, 4, 3, 4, 6, 4, 7, 6, 4, 5, 7, 5, 8, 7, 0, 0, 0, 0, 0, 0, 0, 0, 0, 255,
+		128})
 	f.Fuzz(func(t *testing.T, data []byte) {
 		raw, ok := decode(data)
 		if !ok {
@@ -61,8 +62,9 @@ func decode(data []byte) (field.Raw, bool) {
 		return b
 	}
 	var raw field.Raw
+	vertex := func() int32 { return int32(int(next()) % points) }
 	for len(raw.Tris) < min(80, len(data)/4) {
-		raw.Tris = append(raw.Tris, [3]int32{int32(int(next()) % points), int32(int(next()) % points), int32(int(next()) % points)})
+		raw.Tris = append(raw.Tris, [3]int32{vertex(), vertex(), vertex()})
 	}
 	number := func() float64 { return float64(int8(next())) / 8 }
 	for i := range points {

@@ -61,8 +61,8 @@ func mirrored(raw field.Raw) field.Raw {
 	return out
 }
 
-// halves are meshes of half bodies, cut along y = 0: closed bodies whose whole rim lies in the plane, one with a hole in
-// it, and patches that have other rims too.
+// halves are meshes of half bodies, cut along y = 0: closed bodies whose whole rim lies in the plane, one with a hole
+// in it, and patches that have other rims too.
 var halves = []struct {
 	name   string
 	raw    func() field.Raw
@@ -73,8 +73,8 @@ var halves = []struct {
 	{"half torus", func() field.Raw { return half(exact.Torus(1, 0.4, 720)) }, func(p r3.Vec) r3.Vec {
 		return p.Sub(r3.Vec{X: p.X, Z: p.Z}.Unit()).Unit()
 	}, true},
-	{"half plate", func() field.Raw { return half(exact.Plate(2, 1, 16*16)) }, func(r3.Vec) r3.Vec { return r3.Vec{Z: 1} }, false},
-	{"half disk", func() field.Raw { return half(exact.Disk(1, 400)) }, func(r3.Vec) r3.Vec { return r3.Vec{Z: 1} }, false},
+	{"half plate", func() field.Raw { return half(exact.Plate(2, 1, 16*16)) }, upward, false},
+	{"half disk", func() field.Raw { return half(exact.Disk(1, 400)) }, upward, false},
 	{"half torus, the other way", func() field.Raw {
 		raw := exact.Torus(1, 0.4, 720)
 		for i, p := range raw.Points {
@@ -83,6 +83,8 @@ var halves = []struct {
 		return half(raw)
 	}, func(p r3.Vec) r3.Vec { return p.Sub(r3.Vec{Y: p.Y, Z: p.Z}.Unit()).Unit() }, true},
 }
+
+func upward(r3.Vec) r3.Vec { return r3.Vec{Z: 1} }
 
 // symmetric gives the points a field that is symmetric about y = 0, of the given kind.
 func symmetric(raw *field.Raw, normal func(r3.Vec) r3.Vec, seed uint64, kind int) {
@@ -110,8 +112,8 @@ func symmetric(raw *field.Raw, normal func(r3.Vec) r3.Vec, seed uint64, kind int
 	}
 }
 
-// A half model's ledger must be half of the ledger of the completed model, whose rims and points are counted without any
-// knowledge of symmetry.
+// A half model's ledger must be half of the ledger of the completed model, whose rims and points are counted without
+// any knowledge of symmetry.
 func TestHalfModelAgreesWithWhole(t *testing.T) {
 	rapid.Check(t, func(t *rapid.T) {
 		mesh := rapid.SampledFrom(halves).Draw(t, "mesh")
@@ -181,7 +183,8 @@ func TestHalfPointsAreThePointsInThePlane(t *testing.T) {
 		}
 		for _, p := range part.Points {
 			q := nearestPoint(whole, p.Position)
-			if q == nil || q.Position.Sub(p.Position).Norm() > 0.1*p.Size || q.Type != p.Type || q.Index != p.Index || q.Sense != p.Sense {
+			if q == nil || q.Position.Sub(p.Position).Norm() > 0.1*p.Size || q.Type != p.Type || q.Index != p.Index ||
+				q.Sense != p.Sense {
 				t.Errorf("%s: %s, a %v of %v at %v, is in the whole %+v", c.name, p.ID, p.Type, p.Sense, p.Position, q)
 			}
 			if p.Half != (math.Abs(p.Position.Y) < 1e-9) {

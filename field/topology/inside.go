@@ -128,8 +128,8 @@ func (s *Skeleton) account(l *Loop, legs []leg, in func(v int32) bool) {
 	}
 	l.Accounts = l.IndexSum == l.Index
 	if !l.Accounts && l.Note == "" {
-		l.Note = "the points inside do not account for the index: the loop passes so close to a point that the mesh does not " +
-			"tell its side, or points were cancelled by a floor of robustness"
+		l.Note = "the points inside do not account for the index: the loop passes so close to a point that the mesh does " +
+			"not tell its side, or points were cancelled by a floor of robustness"
 	}
 }
 

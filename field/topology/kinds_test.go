@@ -55,7 +55,8 @@ func TestDegenerateKinds(t *testing.T) {
 			continue
 		}
 		p := s.Points[0]
-		if p.Type != topology.Degenerate || p.Sense != topology.Neutral || p.Index != c.index || !strings.Contains(p.Note, c.note) {
+		if p.Type != topology.Degenerate || p.Sense != topology.Neutral || p.Index != c.index ||
+			!strings.Contains(p.Note, c.note) {
 			t.Errorf("%s: %v of %v, index %d (%s), want index %d", c.name, p.Type, p.Sense, p.Index, p.Note, c.index)
 		}
 		if p.ID != "D1" {

@@ -144,7 +144,7 @@ func (p *placer) knotAt(tris []int32) (field.Loc, bool) {
 	allow := float64(float64(knotShare*curve) * edge)
 	value := r3.Hypot(at(&q.u, at0), at(&q.v, at0))
 	noise := math.Sqrt(q.noise[0][0] + q.noise[1][1])
-	if !(at0.Norm() <= 2*edge) || norm(q.jacobian(at0)) > allow || value > float64(allow*edge) || noise > float64(allow*edge) {
+	if !(at0.Norm() <= 2*edge) || norm(q.jacobian(at0)) > allow || math.Max(value, noise) > float64(allow*edge) {
 		return field.Loc{}, false
 	}
 	spot := b.lift(at0, at(&q.z, at0))

@@ -13,7 +13,8 @@ import (
 	"shearprint/field/topology"
 )
 
-// meshes are surfaces of all kinds: genus 0, 1 and 2, smooth and sharp-edged, regular and shaken, with and without rims.
+// meshes are surfaces of all kinds: genus 0, 1 and 2, smooth and sharp-edged, regular and shaken, with and without
+// rims.
 var meshes = []struct {
 	name string
 	raw  func() field.Raw
@@ -91,8 +92,8 @@ func fill(raw *field.Raw, seed uint64, kind int) {
 const kinds = 9
 
 // The sum of the indices is the Euler characteristic of every closed part, and with rims the Euler characteristic plus
-// half of (interior - exterior tangencies): Poincare 1885, Hopf 1926. It must hold for any field on any mesh, and at every
-// floor of robustness.
+// half of (interior - exterior tangencies): Poincare 1885, Hopf 1926. It must hold for any field on any mesh, and at
+// every floor of robustness.
 func TestLedgerIsATheorem(t *testing.T) {
 	rapid.Check(t, func(t *rapid.T) {
 		mesh := rapid.SampledFrom(meshes).Draw(t, "mesh")
@@ -210,7 +211,10 @@ func TestTangencies(t *testing.T) {
 	for _, c := range []struct {
 		name    string
 		in, out int
-	}{{"disk-uniform", 0, 2}, {"disk-saddle", 0, 4}, {"disk-dipole", 2, 0}, {"disk-shifted-turn", 1, 1}, {"annulus-uniform", 2, 2}} {
+	}{
+		{"disk-uniform", 0, 2}, {"disk-saddle", 0, 4}, {"disk-dipole", 2, 0}, {"disk-shifted-turn", 1, 1},
+		{"annulus-uniform", 2, 2},
+	} {
 		s := find(t, caseNamed(c.name).Field(5000), topology.Options{})
 		in, out := 0, 0
 		for _, r := range s.Ledger.Parts[0].Rims {
@@ -222,8 +226,8 @@ func TestTangencies(t *testing.T) {
 	}
 }
 
-// The plate with two holes in a uniform stream: two interior tangencies more than exterior ones (four at round holes, two
-// outside; holes with steps have more of both), sum 0.
+// The plate with two holes in a uniform stream: two interior tangencies more than exterior ones (four at round holes,
+// two outside; holes with steps have more of both), sum 0.
 func TestTangenciesAtHoles(t *testing.T) {
 	raw := exact.Plate(2, 1, 4000)
 	kept := raw.Tris[:0]

@@ -41,9 +41,9 @@ type Hodograph struct {
 	Size  float64 // |tau|
 }
 
-// Loop walks from point to point, along the surface and back to the first, and reads how tau turns. The points are moved
-// to the nearest places of the surface. Counter-clockwise loops, seen from the fluid, have their region on the left. The
-// error says why there is no such loop.
+// Loop walks from point to point, along the surface and back to the first, and reads how tau turns. The points are
+// moved to the nearest places of the surface. Counter-clockwise loops, seen from the fluid, have their region on the
+// left. The error says why there is no such loop.
 func (s *Skeleton) Loop(through []r3.Vec) (*Loop, error) {
 	if len(through) < 3 {
 		return nil, errors.New("a loop takes at least three points")

@@ -12,7 +12,8 @@ import (
 	"shearprint/field/topology"
 )
 
-// circle returns n points around the axis through at, at the given distance from it, counter-clockwise seen from its tip.
+// circle returns n points around the axis through at, at the given distance from it, counter-clockwise seen from its
+// tip.
 func circle(at, axis r3.Vec, radius float64, n int) []r3.Vec {
 	u := axis.Perpendicular()
 	v := axis.Unit().Cross(u)
@@ -69,7 +70,9 @@ func TestLoopAroundEachPoint(t *testing.T) {
 // for it.
 func TestLoopsAccount(t *testing.T) {
 	list := []*topology.Skeleton{}
-	for _, name := range []string{"stream-and-strain", "disk-saddle", "annulus-uniform", "saddle-node-pair", "karman-disk"} {
+	for _, name := range []string{
+		"stream-and-strain", "disk-saddle", "annulus-uniform", "saddle-node-pair", "karman-disk",
+	} {
 		list = append(list, find(t, caseNamed(name).Field(3000), topology.Options{}))
 	}
 	missed := 0
@@ -100,8 +103,8 @@ func TestLoopsAccount(t *testing.T) {
 	})
 }
 
-// A loop around the tube of the torus bounds nothing. Tau crosses it at right angles all along, and the loop is a geodesic,
-// so that nothing turns, up to what the mesh of this size makes of both (0.1).
+// A loop around the tube of the torus bounds nothing. Tau crosses it at right angles all along, and the loop is a
+// geodesic, so that nothing turns, up to what the mesh of this size makes of both (0.1).
 func TestLoopAroundHandle(t *testing.T) {
 	s := find(t, caseNamed("torus-around").Field(4000), topology.Options{})
 	l, err := s.Loop(circle(r3.Vec{X: 1}, r3.Vec{Z: 1}, 0.4, 12))

@@ -24,7 +24,8 @@ func onMesh(t *testing.T, raw field.Raw, tau func(r3.Vec) r3.Vec) *topology.Skel
 }
 
 // A stream along the axis of a pure strain on the unit sphere: pairs of points leave the stagnation points at the
-// thresholds U = (10/3) |E1 - Ej|, here 4 and 6. (Stokes flow, formulas of Batchelor 1967; thresholds derived from them.)
+// thresholds U = (10/3) |E1 - Ej|, here 4 and 6. (Stokes flow, formulas of Batchelor 1967; thresholds derived from
+// them.)
 func TestBifurcations(t *testing.T) {
 	for _, c := range []struct {
 		u      float64
@@ -70,15 +71,17 @@ func TestTurningSphere(t *testing.T) {
 	}
 	for _, p := range inert.Points {
 		// The divergence at a pole is 2 Re/4 > 0: fluid is drawn to the poles and thrown out at the equator.
-		if p.Sense != topology.Attachment || math.Abs(p.Eigenvalues[0][0]-re/4) > 0.03*3 || math.Abs(p.Eigenvalues[0][1]-3) > 0.03*3 {
+		e := p.Eigenvalues[0]
+		if p.Sense != topology.Attachment || math.Abs(e[0]-re/4) > 0.03*3 || math.Abs(e[1]-3) > 0.03*3 {
 			t.Errorf("with inertia: %s is of %v, %g, want %g +- 3i", p.ID, p.Sense, p.Eigenvalues, re/4)
 		}
 	}
 }
 
-// A prolate spheroid (2:1) in creeping flow along its axis: tau is the tangential part of F h/(4 pi a b^2), h the distance
-// of the tangent plane from the centre, and at both ends the Jacobian is F a/(4 pi b^4), a star. F from Chwang and Wu
-// 1975; formula of the traction after Brenner 1964 (from memory, verified by integration of the singularities).
+// A prolate spheroid (2:1) in creeping flow along its axis: tau is the tangential part of F h/(4 pi a b^2), h the
+// distance of the tangent plane from the centre, and at both ends the Jacobian is F a/(4 pi b^4), a star. F from
+// Chwang and Wu 1975; formula of the traction after Brenner 1964 (from memory, verified by integration of the
+// singularities).
 func TestSpheroid(t *testing.T) {
 	const a, b, force = 2.0, 1.0, 22.693753013
 	raw := exact.Sphere(1, 20000)
@@ -144,8 +147,8 @@ func TestLinearFieldOnSphere(t *testing.T) {
 	}
 }
 
-// Face data of a half model point a little across the plane of symmetry once they are averaged to its vertices; the half
-// points are found all the same.
+// Face data of a half model point a little across the plane of symmetry once they are averaged to its vertices; the
+// half points are found all the same.
 func TestHalfModelFromFaceData(t *testing.T) {
 	tau, _ := exact.StokesSphere(r3.Vec{}, r3.Vec{}, exact.Diagonal(0.8, 0.2, -1))
 	raw := half(cubeSphere(16))

@@ -12,10 +12,10 @@ type rows [][terms + 3]float64
 // patch of aspect 50 leave 1/50^2; on a line, rounding.
 const rankShare = 1e-7
 
-// solveQuadratic finds the coefficients that fit the rows best, for each right-hand side. It returns the upper triangle r
-// of the factorisation, for error estimates, and whether the samples determine all coefficients. The rows are
-// overwritten: those after the sixth hold the residuals, turned among themselves. (Householder reflections; own code,
-// since products must not be fused.)
+// solveQuadratic finds the coefficients that fit the rows best, for each right-hand side. It returns the upper
+// triangle r of the factorisation, for error estimates, and whether the samples determine all coefficients. The rows
+// are overwritten: those after the sixth hold the residuals, turned among themselves. (Householder reflections; own
+// code, since products must not be fused.)
 func solveQuadratic(a rows) (x [3][terms]float64, r [terms][terms]float64, ok bool) {
 	n := len(a)
 	if n < terms {

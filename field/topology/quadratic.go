@@ -6,7 +6,8 @@ import (
 	"shearprint/field/r3"
 )
 
-// quadratic is a fitted field around an origin in a tangent plane, in units of the patch's size and of its largest |tau|.
+// quadratic is a fitted field around an origin in a tangent plane, in units of the patch's size and of its largest
+// |tau|.
 type quadratic struct {
 	u, v, z [terms]float64 // tau's two components and the surface's height
 	r       [terms][terms]float64

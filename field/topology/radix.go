@@ -9,8 +9,9 @@ type keyed struct {
 // digitBits per pass: 2^11 counters stay in the first-level cache.
 const digitBits = 11
 
-// sortByKey sorts by key, equal keys in the order in which they come. The bits of floats that are not negative sort like
-// the floats. It returns the sorted list, which may be another one than edges. (Radix sort from the lowest digit.)
+// sortByKey sorts by key, equal keys in the order in which they come. The bits of floats that are not negative sort
+// like the floats. It returns the sorted list, which may be another one than edges. (Radix sort from the lowest
+// digit.)
 func sortByKey(edges []keyed) []keyed {
 	const buckets, mask = 1 << digitBits, 1<<digitBits - 1
 	var count [(64 + digitBits - 1) / digitBits][buckets]int32

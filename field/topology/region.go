@@ -37,8 +37,8 @@ func (s *Skeleton) InLoop(l *Loop) func(t int32) bool {
 	}
 }
 
-// RegionOf balances the chosen triangles: what tau turns along the edge of the region, with the curvature inside, against
-// the points inside. A region of no triangles is balanced.
+// RegionOf balances the chosen triangles: what tau turns along the edge of the region, with the curvature inside,
+// against the points inside. A region of no triangles is balanced.
 func (s *Skeleton) RegionOf(in func(t int32) bool) Region {
 	f := s.Field
 	r := Region{}

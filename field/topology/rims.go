@@ -88,9 +88,9 @@ func (u *turner) standIns(r *rimReading, edges []int32) {
 	}
 }
 
-// meanAround returns the direction that the non-zero neighbours of zero vertex v bring to it along the edges. Where they
-// cancel, tau turns round along the rim, and it does so over the side to which it points at the neighbours on the rim: it
-// keeps crossing the rim. Where nothing is brought the rim's own direction has to do.
+// meanAround returns the direction that the non-zero neighbours of zero vertex v bring to it along the edges. Where
+// they cancel, tau turns round along the rim, and it does so over the side to which it points at the neighbours on the
+// rim: it keeps crossing the rim. Where nothing is brought the rim's own direction has to do.
 func (u *turner) meanAround(v int32) float64 {
 	f := u.f
 	var sum r3.Vec2

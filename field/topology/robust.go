@@ -10,8 +10,8 @@ import (
 // Graphics Forum 32(3), 2013; from memory.)
 //
 // Components grow by Kruskal's method over the triangles: two neighbours join at the least |tau| along their common
-// edge. That is right for a field that is linear in each triangle, where the part of a triangle below a level is convex.
-// The rim takes no part: a point is cancelled by other points only.
+// edge. That is right for a field that is linear in each triangle, where the part of a triangle below a level is
+// convex. The rim takes no part: a point is cancelled by other points only.
 func (c *count) findRobustness(ctx context.Context) error {
 	for i := range c.seeds {
 		c.seeds[i].robust, c.seeds[i].group = math.Inf(1), -1

@@ -6,8 +6,8 @@ import (
 	"shearprint/field/r3"
 )
 
-// tangencyBand is how far tau must turn beyond a tangent direction to count as having passed it [rad]: two degrees, which
-// noise along a rim in the stream's direction stays within.
+// tangencyBand is how far tau must turn beyond a tangent direction to count as having passed it [rad]: two degrees,
+// which noise along a rim in the stream's direction stays within.
 const tangencyBand = math.Pi / 90
 
 // countRim finds the reversals, the exact term and the tangencies of one rim.

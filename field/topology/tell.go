@@ -6,8 +6,8 @@ import (
 	"shearprint/field"
 )
 
-// residueLimit is how far the index of a triangle may be from a whole number before rounding is no explanation any more:
-// the sum has about ten terms of the size of pi.
+// residueLimit is how far the index of a triangle may be from a whole number before rounding is no explanation any
+// more: the sum has about ten terms of the size of pi.
 const residueLimit = 1e-9
 
 // tellFindings tells what was assumed about the field, and what is doubtful about the points.
@@ -41,8 +41,8 @@ func (s *Skeleton) tellSymmetry() {
 			continue
 		}
 		s.tell(field.Note, "symmetry-rim", r.Reversals, fmt.Sprintf("rim %d", r.Rim),
-			"tau runs along %.0f %% of rim %d, in a plane: it was taken for the plane of symmetry of a half model, and the %s on "+
-				"it for %s", 100*r.Symmetric, r.Rim, plural(r.Reversals, "point"), plural(r.Reversals, "half point"))
+			"tau runs along %.0f %% of rim %d, in a plane: it was taken for the plane of symmetry of a half model, and the %s "+
+				"on it for %s", 100*r.Symmetric, r.Rim, plural(r.Reversals, "point"), plural(r.Reversals, "half point"))
 	}
 }
 

@@ -119,8 +119,8 @@ func turnMatrix(j [2][2]float64, c, d float64) [2][2]float64 {
 	return out
 }
 
-// shareAround returns the share of triangle t and its neighbours whose own Jacobians give the same type: all that can be
-// said of its certainty without a fit.
+// shareAround returns the share of triangle t and its neighbours whose own Jacobians give the same type: all that can
+// be said of its certainty without a fit.
 func (p *placer) shareAround(t int32, index int, want Type, lim borders) float64 {
 	kept, all := 0, 0
 	p.gather(1, t)

@@ -22,8 +22,8 @@ type turner struct {
 const antiparallel = 1e-6
 
 // turn returns the angle in [-pi, pi] by which tau turns along half-edge h, against parallel transport. It is computed
-// from the half-edge with the lower vertex number first, so that the two half-edges of an edge give opposite numbers, to
-// the last bit, and cancel in sums.
+// from the half-edge with the lower vertex number first, so that the two half-edges of an edge give opposite numbers,
+// to the last bit, and cancel in sums.
 func (u *turner) turn(h int32) float64 {
 	f := u.f
 	a, b := f.Tail(h), f.Tip(h)

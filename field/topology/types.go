@@ -254,7 +254,8 @@ type RimLedger struct {
 	Term float64
 	// Reversals is the number of half points on the rim.
 	Reversals int
-	// Streamline tells that tau runs along the whole rim, Symmetric the share of its length along which it does in a plane.
+	// Streamline tells that tau runs along the whole rim, Symmetric the share of its length along which it does in a
+	// plane.
 	Streamline bool
 	Symmetric  float64
 }

@@ -64,8 +64,8 @@ func walk(m *field.Mesh, a, b field.Loc) ([]leg, error) {
 			return legs, nil
 		}
 	}
-	return nil, fmt.Errorf("no straight way along the surface from %s to %s: a rim or another part lies between; add points "+
-		"between them", place(p), place(q))
+	return nil, fmt.Errorf("no straight way along the surface from %s to %s: a rim or another part lies between; add "+
+		"points between them", place(p), place(q))
 }
 
 func place(p r3.Vec) string { return fmt.Sprintf("(%.6g, %.6g, %.6g)", p.X, p.Y, p.Z) }
