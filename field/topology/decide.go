@@ -170,8 +170,8 @@ func missing(gap float64) string {
 		if n == 1 {
 			return fmt.Sprintf("one %s is missing, or one %s too many was read", what, other)
 		}
-		return fmt.Sprintf("%d more of the kind %s are missing, or %d too many of the kind %s were read", int(n), what, int(n),
-			other)
+		return fmt.Sprintf("%d more of the kind %s are missing, or %d too many of the kind %s were read",
+			int(n), what, int(n), other)
 	}
 	return fmt.Sprintf("%s of the kind %s is missing (half points count one half), or as much of the kind %s is too many",
 		number(n), what, other)
