@@ -10,13 +10,14 @@ import (
 // region finds what lies on the left of the loop and accounts for it.
 func (s *Skeleton) region(l *Loop, legs []leg) {
 	f := s.Field
-	crossed := map[int32]int{} // how often, by the edge's lower half-edge; for looking up only
+	crossed := make([]bool, len(f.Twin)) // an odd number of times, per half-edge
 	for _, g := range legs {
-		if g.out.h >= 0 {
-			crossed[edgeOf(f.Mesh, g.out.h)]++
+		if h := g.out.h; h >= 0 {
+			crossed[h] = !crossed[h]
+			crossed[f.Twin[h]] = crossed[h]
 		}
 	}
-	in := map[int32]bool{}
+	in := make([]bool, len(f.Points))
 	var stack []int32
 	reach := func(v int32) {
 		if !in[v] {
@@ -26,13 +27,12 @@ func (s *Skeleton) region(l *Loop, legs []leg) {
 	}
 	// Facing out of a triangle across its half-edge, the half-edge's tip is on the left.
 	for _, g := range legs {
-		if h := g.out.h; h >= 0 && crossed[edgeOf(f.Mesh, h)]%2 == 1 {
+		if h := g.out.h; h >= 0 && crossed[h] {
 			reach(f.Tip(h))
 		}
 	}
-	l.Bounds = true
 	if len(stack) == 0 && s.clockwise(l) { // no vertex in the loop: it runs around a bit of an edge or a triangle
-		for v := range int32(len(f.Points)) {
+		for v := range in {
 			in[v] = true
 		}
 	}
@@ -40,24 +40,22 @@ func (s *Skeleton) region(l *Loop, legs []leg) {
 		v := stack[len(stack)-1]
 		stack = stack[:len(stack)-1]
 		for h := range f.Fan(v) {
-			if crossed[edgeOf(f.Mesh, h)]%2 == 0 {
+			if !crossed[h] {
 				reach(f.Tip(h))
 			}
-			if p := field.Prev(h); f.Twin[p] < 0 && crossed[edgeOf(f.Mesh, p)]%2 == 0 {
+			if p := field.Prev(h); f.Twin[p] < 0 {
 				reach(f.Tail(p))
 			}
 		}
 	}
 	for _, g := range legs {
-		if h := g.out.h; h >= 0 && crossed[edgeOf(f.Mesh, h)]%2 == 1 && in[f.Tail(h)] {
-			l.Bounds = false
+		if h := g.out.h; h >= 0 && crossed[h] && in[f.Tail(h)] {
+			l.Note = "the loop crosses itself or runs around a handle of the surface: it bounds no region on its left"
+			return
 		}
 	}
-	if !l.Bounds {
-		l.Note = "the loop crosses itself or runs around a handle of the surface: it bounds no region on its left"
-		return
-	}
-	s.account(l, legs, func(v int32) bool { return in[v] })
+	l.Bounds = true
+	s.account(l, legs, in)
 }
 
 // clockwise tells whether the loop, if it is small, runs clockwise seen from the fluid.
@@ -72,19 +70,11 @@ func (s *Skeleton) clockwise(l *Loop) bool {
 	return area < 0
 }
 
-// edgeOf returns one number for both half-edges of an edge.
-func edgeOf(m *field.Mesh, h int32) int32 {
-	if g := m.Twin[h]; g >= 0 && g < h {
-		return g
-	}
-	return h
-}
-
 // account sums curvature and points of the region whose vertices are in.
-func (s *Skeleton) account(l *Loop, legs []leg, in func(v int32) bool) {
+func (s *Skeleton) account(l *Loop, legs []leg, in []bool) {
 	f := s.Field
 	for v := range int32(len(f.Points)) {
-		if !in(v) {
+		if !in[v] {
 			continue
 		}
 		sum := 0.0
@@ -98,7 +88,7 @@ func (s *Skeleton) account(l *Loop, legs []leg, in func(v int32) bool) {
 		l.Curvature += 2*math.Pi - sum
 	}
 	for _, r := range s.count.rims {
-		if v := f.Tail(f.Rims[r.Rim].Edges[0]); in(v) {
+		if v := f.Tail(f.Rims[r.Rim].Edges[0]); in[v] {
 			l.Curvature += float64(2 * math.Pi * r.Term)
 		}
 	}
@@ -110,7 +100,7 @@ func (s *Skeleton) account(l *Loop, legs []leg, in func(v int32) bool) {
 	}
 	for t := range int32(len(f.Tris)) {
 		v := f.Tris[t]
-		if cut[t] == nil && in(v[0]) && in(v[1]) && in(v[2]) {
+		if in[v[0]] && in[v[1]] && in[v[2]] && cut[t] == nil {
 			l.Tris = append(l.Tris, t)
 		}
 	}
@@ -134,13 +124,13 @@ func (s *Skeleton) account(l *Loop, legs []leg, in func(v int32) bool) {
 }
 
 // contains tells whether the place is in the region: as its triangle's first corner is, but for the legs between them.
-func (s *Skeleton) contains(at field.Loc, cut []leg, in func(v int32) bool) bool {
+func (s *Skeleton) contains(at field.Loc, cut []leg, in []bool) bool {
 	v := s.Field.Tris[at.Tri]
 	if len(cut) == 0 {
-		return in(v[0])
+		return in[v[0]]
 	}
 	flat := s.Field.Flat(at.Tri)
-	side := in(v[0])
+	side := in[v[0]]
 	p, q := mix(flat, inside(at).Bary), flat[0]
 	for _, g := range cut {
 		if segmentsCross(p, q, mix(flat, g.from), mix(flat, g.to)) {

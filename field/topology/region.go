@@ -43,7 +43,8 @@ func (s *Skeleton) RegionOf(in func(t int32) bool) Region {
 	f := s.Field
 	r := Region{}
 	chosen := make([]bool, len(f.Tris))
-	vertices := map[int32]bool{}
+	seen := make([]bool, len(f.Points))
+	vertices := 0
 	edges := 0 // counted twice inside the region, once at its edge
 	turned := 0.0
 	for t := range int32(len(f.Tris)) {
@@ -56,7 +57,10 @@ func (s *Skeleton) RegionOf(in func(t int32) bool) Region {
 		r.Triangles++
 		turned += f.Curvature(t)
 		for k := range int32(3) {
-			vertices[f.Tris[t][k]] = true
+			if v := f.Tris[t][k]; !seen[v] {
+				seen[v] = true
+				vertices++
+			}
 			h := 3*t + k
 			if g := f.Twin[h]; g >= 0 && chosen[g/3] {
 				edges++
@@ -66,7 +70,7 @@ func (s *Skeleton) RegionOf(in func(t int32) bool) Region {
 			turned += s.count.turn(h)
 		}
 	}
-	r.Euler = len(vertices) - edges/2 + r.Triangles
+	r.Euler = vertices - edges/2 + r.Triangles
 	demand := math.Round(turned / (2 * math.Pi))
 	for _, rim := range s.count.rims {
 		for _, rev := range rim.reversals {
