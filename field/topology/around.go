@@ -10,11 +10,12 @@ import (
 
 // Limits of the neighbourhood of a point.
 const (
-	fitRings   = 2   // vertices within two edges of the triangle's corners take part in the fit
-	mostRings  = 4   // as far as the neighbourhood grows when there are too few samples
-	fewSamples = 12  // twice the coefficients of a quadratic
-	mostFaces  = 400 // enough for any decent mesh; a hub with thousands of triangles stops here
-	creaseTilt = 0.6 // angle between neighbouring triangles from which their edge is a crease [rad], about 35 degrees:
+	fitRings   = 2             // vertices within two edges of the triangle's corners take part in the fit
+	mostRings  = 4             // as far as the neighbourhood grows when there are too few samples
+	fewSamples = 12            // twice the coefficients of a quadratic
+	mostFaces  = 400           // enough for any decent mesh; a hub with thousands of triangles stops here
+	mostNear   = 8 * mostFaces // names of triangles: each has three vertices, and comes up for each of them
+	creaseTilt = 0.6           // angle between neighbouring triangles from which their edge is a crease [rad], about 35 degrees:
 	// coarse spheres of 300 triangles stay at half of it, roofs and steps are above
 )
 
@@ -94,9 +95,10 @@ func isCrease(n, m r3.Vec) bool {
 func (a *around) near(rings int32, tris ...int32) iter.Seq[int32] {
 	return func(yield func(int32) bool) {
 		a.stamp++
+		left := mostNear
 		for _, v := range a.measure(tris, rings) {
 			for h := range a.f.Fan(v) {
-				if !yield(h / 3) {
+				if left--; left < 0 || !yield(h/3) {
 					return
 				}
 			}

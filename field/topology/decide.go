@@ -126,7 +126,7 @@ func (h Hand) surface() (string, float64) {
 		return rule, float64(-2 * h.Holes)
 	}
 	in, out := h.Interior, h.Exterior
-	why := fmt.Sprintf("tau touches the rim %s from inside and %s from outside", times(in), times(out))
+	why := fmt.Sprintf("tau touches the rim %s from inside and %s from outside", howOften(in), howOften(out))
 	switch h.Rim {
 	case StreamAcross:
 		in, out, why = 0, 2, "the stream enters on one side and leaves on the other"
@@ -146,7 +146,7 @@ func (h Hand) section() (string, float64) {
 	return "plane section through a wall (Hunt, Abell, Peterka and Woo 1978)", float64(-h.Holes)
 }
 
-func times(n int) string {
+func howOften(n int) string {
 	switch n {
 	case 0:
 		return "never"
