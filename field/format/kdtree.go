@@ -118,22 +118,39 @@ func (t *kdTree) selectNth(from, to, n int, axis uint8) {
 // nearest returns the point nearest to p and its distance; -1 and infinity if there is none. Of equally near points,
 // one is taken that depends on the points alone.
 func (t *kdTree) nearest(p r3.Vec) (best int32, dist float64) {
-	q := kdQuery{t: t, p: p, best: -1, least: math.Inf(1)}
+	return t.nearestOf(p, math.Inf(1), func(int32) bool { return true })
+}
+
+// maxRefused ends a search whose nearest points are all refused: what lies farther away will not do better.
+const maxRefused = 64
+
+// nearestOf is nearest among the accepted points that are nearer than within; it gives up after maxRefused others.
+func (t *kdTree) nearestOf(p r3.Vec, within float64, accept func(i int32) bool) (best int32, dist float64) {
+	q := kdQuery{t: t, p: p, best: -1, least: float64(within * within), accept: accept, left: maxRefused}
 	q.visit(0, len(t.order))
 	return q.best, math.Sqrt(q.least)
 }
 
 type kdQuery struct {
-	t     *kdTree
-	p     r3.Vec
-	best  int32
-	least float64
+	t      *kdTree
+	p      r3.Vec
+	best   int32
+	least  float64
+	accept func(i int32) bool
+	left   int // how many points may yet be refused
 }
 
 func (q *kdQuery) try(i int32) {
 	d := q.t.points[i].Sub(q.p)
-	if d2 := d.Dot(d); d2 < q.least {
+	d2 := d.Dot(d)
+	switch {
+	case !(d2 < q.least):
+	case q.accept(i):
 		q.least, q.best = d2, i
+	default:
+		if q.left--; q.left == 0 {
+			q.least = 0 // nothing is nearer
+		}
 	}
 }
 

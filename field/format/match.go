@@ -39,17 +39,24 @@ func attach(src source, raw *field.Raw, h hints, opt Options) (hints, error) {
 		targets, what = &faces, "faces"
 	}
 	m := matchRows(raw.Points, targets)
-	if m.matched == 0 || float64(m.matched) < leastMatch*float64(len(targets.place)) {
+	code, level, way := "matched-surface", field.Note, "at"
+	if m.share() < leastMatch {
+		if loose := rowsOnTriangles(raw.Points, &surface); loose.share() >= leastMatch {
+			surface.Face = nil // each triangle is a face of its own here
+			triangles := faceTargets(&surface)
+			m, targets, what = loose, &triangles, "faces"
+			code, level, way = "matched-loosely", field.Doubtful, "nearest to, though not in the middle of,"
+		}
+	}
+	if m.share() < leastMatch {
 		return h, src.fail("", misfit(raw.Points, surface.Points),
 			"only %d of the %d %s of the surface %s have a row of the table near them",
 			m.matched, len(targets.place), what, opt.SurfaceName)
 	}
-	fit := medianOf(m.distances)
 	scatter(raw, &surface, m.row, what == "faces")
-	note(raw, field.Note, "matched-surface", m.matched, "",
-		"%d of %d rows were matched to the %s of %s; the median distance is %.2g "+
-			"of the local size, the largest %.2g", m.used, len(m.rowUsed), what, baseName(opt.SurfaceName), fit,
-		slices.Max(m.distances))
+	note(raw, level, code, m.matched, "",
+		"%d of %d rows are %s the %s of %s; the median distance is %.2g of the local size, the largest %.2g",
+		m.used, len(m.rowUsed), way, what, baseName(opt.SurfaceName), medianOf(m.distances), slices.Max(m.distances))
 	if holes := len(targets.place) - m.matched; holes > 0 {
 		note(raw, field.Doubtful, "unmatched-surface", holes, pointPlace(targets.place[m.firstHole]),
 			"%d of the %d %s of the surface have no row of the table and are holes", holes, len(targets.place), what)
@@ -122,48 +129,6 @@ func sameUnit(src source, raw, surface *field.Raw, opt Options) error {
 			surface.Units.Length)
 	}
 	return nil
-}
-
-// matching says which row each target takes.
-type matching struct {
-	row       []int32 // per target; -1 for none
-	rowUsed   []bool
-	used      int
-	matched   int
-	firstHole int
-	distances []float64 // of the matched, relative to the local size
-}
-
-// matchRows gives each row to its nearest target within matchWithin, and each target the nearest of its rows; of
-// equally near rows the first.
-func matchRows(rows []r3.Vec, t *targets) matching {
-	m := matching{row: make([]int32, len(t.place)), rowUsed: make([]bool, len(rows)), firstHole: -1}
-	best := make([]float64, len(t.place))
-	for k := range m.row {
-		m.row[k] = -1
-	}
-	for i, p := range rows {
-		k, dist := t.tree.nearest(p)
-		d := t.relative(k, dist)
-		if d <= matchWithin && (m.row[k] < 0 || d < best[k]) {
-			m.row[k], best[k] = int32(i), d
-		}
-	}
-	for k, row := range m.row {
-		if row < 0 {
-			if m.firstHole < 0 {
-				m.firstHole = k
-			}
-			continue
-		}
-		m.matched++
-		m.distances = append(m.distances, best[k])
-		if !m.rowUsed[row] {
-			m.rowUsed[row] = true
-			m.used++
-		}
-	}
-	return m
 }
 
 // scatter replaces the table's points by the surface and its values by those of the matched rows.

@@ -226,6 +226,35 @@ func TestSolverTablesOfTheRuns(t *testing.T) {
 	}
 }
 
+// A solver's quadrilaterals are halves in an STL file: each half takes the value at the centre of its whole.
+func TestQuadrilateralCentresOnHalves(t *testing.T) {
+	for _, name := range runs {
+		table := runFile(t, name+"_faces.csv.gz")
+		raw, err := format.Read(name+".ply", runFile(t, name+".ply"), format.Options{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		whole := load(t, "whole", table, format.Options{Surface: runFile(t, name+".ply")})
+		halves := load(t, "halves", table, format.Options{Surface: stlOf(raw), SurfaceName: "h.stl"})
+		m, ok := finding(halves.Findings, "matched-loosely")
+		if !ok || m.Level != field.Doubtful || m.Count < len(raw.Tris)*99/100 {
+			t.Errorf("%s: %d of %d: %+v", name, m.Count, len(raw.Tris), halves.Findings)
+		}
+		if len(halves.Points) != len(whole.Points) {
+			t.Fatalf("%s: %d points, want %d", name, len(halves.Points), len(whole.Points))
+		}
+		near := 0
+		for v := range whole.Points {
+			if halves.Tau3[v].Sub(whole.Tau3[v]).Norm() < 0.05*whole.MaxTau {
+				near++
+			}
+		}
+		if near < len(whole.Points)*97/100 {
+			t.Errorf("%s: only %d of %d vertices have nearly the same tau", name, near, len(whole.Points))
+		}
+	}
+}
+
 // Without values in the surface file, pressure tells the sign.
 func TestSignByPressure(t *testing.T) {
 	for _, flip := range []bool{false, true} {

@@ -2,6 +2,7 @@ package format_test
 
 import (
 	"bytes"
+	"compress/gzip"
 	"os"
 	"testing"
 
@@ -58,4 +59,17 @@ func TestGLBRoundTripIsLossless(t *testing.T) {
 			t.Errorf("%s: writing again gives other bytes", name)
 		}
 	}
+}
+
+func packed(t *testing.T, data []byte) []byte {
+	t.Helper()
+	var b bytes.Buffer
+	z := gzip.NewWriter(&b)
+	if _, err := z.Write(data); err != nil {
+		t.Fatal(err)
+	}
+	if err := z.Close(); err != nil {
+		t.Fatal(err)
+	}
+	return b.Bytes()
 }

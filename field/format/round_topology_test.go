@@ -2,7 +2,6 @@ package format_test
 
 import (
 	"bytes"
-	"compress/gzip"
 	"context"
 	"fmt"
 	"testing"
@@ -48,19 +47,6 @@ func TestRoundTripsKeepTopology(t *testing.T) {
 			}
 		}
 	}
-}
-
-func packed(t *testing.T, data []byte) []byte {
-	t.Helper()
-	var b bytes.Buffer
-	z := gzip.NewWriter(&b)
-	if _, err := z.Write(data); err != nil {
-		t.Fatal(err)
-	}
-	if err := z.Close(); err != nil {
-		t.Fatal(err)
-	}
-	return b.Bytes()
 }
 
 // pointsOf lists the points with their types, senses and places to a thousandth of the size, and the ledger. Weaker

@@ -143,7 +143,8 @@ func TestTableNamesByTheUser(t *testing.T) {
 		t.Errorf("unknown names: %v", err)
 	}
 	flow := gridTable("x,y,z,U:0,U:1,U:2,q", ",", ".", "\n")
-	if _, err := format.Read("t.csv", []byte(flow), format.Options{}); err == nil || !strings.Contains(err.Error(), "--tau u") {
+	if _, err := format.Read("t.csv", []byte(flow), format.Options{}); err == nil || !strings.Contains(err.Error(),
+		"--tau u") {
 		t.Errorf("a velocity: %v", err)
 	}
 	raw, err := format.Read("t.csv", []byte(text), format.Options{Tau: "a,b,c", P: "q"})
