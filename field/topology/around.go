@@ -13,7 +13,7 @@ const (
 	fitRings   = 2             // vertices within two edges of the triangle's corners take part in the fit
 	mostRings  = 4             // as far as the neighbourhood grows when there are too few samples
 	fewSamples = 12            // twice the coefficients of a quadratic
-	mostFaces  = 400           // enough for any decent mesh; a hub with thousands of triangles stops here
+	mostFaces  = 200           // enough for any decent mesh; a hub with thousands of triangles stops here
 	mostNear   = 8 * mostFaces // names of triangles: each has three vertices, and comes up for each of them
 	creaseTilt = 0.6           // angle between neighbouring triangles from which their edge is a crease [rad], about 35 degrees:
 	// coarse spheres of 300 triangles stay at half of it, roofs and steps are above
