@@ -7,40 +7,50 @@ import (
 
 // rule says in words what the part's topology demands.
 func (s *Skeleton) rule(p *PartLedger) string {
-	part := s.Field.Parts[p.Part]
-	sum := "nodes + foci - saddles"
-	for _, r := range p.Rims {
-		if r.Reversals > 0 {
-			sum = "nodes + foci + half nodes/2 - saddles - half saddles/2"
-			break
-		}
-	}
-	demand := fmt.Sprintf("%s = %s", sum, number(p.Expected))
 	if len(p.Rims) == 0 {
-		return closedRule(part.Genus) + ": " + demand
+		return fmt.Sprintf("%s: nodes + foci - saddles = %s", closedRule(s.Field.Parts[p.Part].Genus), number(p.Expected))
 	}
-	in, out, streamline, symmetric := 0, 0, 0, false
+	in, out, along, reversals := 0, 0, 0, 0
 	for _, r := range p.Rims {
 		in += r.Interior
 		out += r.Exterior
+		reversals += r.Reversals
 		if r.Streamline {
-			streamline++
+			along++
 		}
-		symmetric = symmetric || r.Reversals > 0
 	}
-	kind := fmt.Sprintf("patch with %s (Euler characteristic %d)", plural(len(p.Rims), "rim"), p.Euler)
+	sum := "nodes + foci - saddles"
+	if reversals > 0 {
+		sum = "nodes + foci + half nodes/2 - saddles - half saddles/2"
+	}
+	kind := fmt.Sprintf("patch with %s (Euler characteristic %d), ", plural(len(p.Rims), "rim"), p.Euler)
+	if along == len(p.Rims) {
+		kind += "tau runs along the whole rim"
+	} else {
+		kind += fmt.Sprintf("tau touches the rim %s from inside and %s from outside", howOften(in), howOften(out))
+	}
+	if p.Euler == 1 && len(p.Rims) == 1 {
+		kind = bodyOf(p.BoundaryTerm, reversals > 0, in > 0) + kind
+	}
+	return fmt.Sprintf("%s: %s = %s", kind, sum, number(p.Expected))
+}
+
+// bodyOf names what a patch without holes may be a picture of, by the term of its rim; "" if nothing in particular.
+func bodyOf(term float64, half, back bool) string {
 	switch {
-	case streamline == len(p.Rims) && symmetric:
-		kind += ", cut along its plane of symmetry, where tau runs along the rim"
-	case streamline == len(p.Rims):
-		kind += ", tau runs along the whole rim"
-	default:
-		kind += fmt.Sprintf(", where tau touches the rim %d times from inside and %d times from outside", in, out)
+	case half && term == 0:
+		return "half of an isolated body, cut along its plane of symmetry; "
+	case half && term == -1:
+		return "half of a body on a wall, cut along its plane of symmetry (Hunt, Abell, Peterka and Woo 1978); "
+	case half:
+		return "cut along a plane of symmetry; "
+	case term == -1:
+		return "body on a wall, or any patch, with a stream across (Hunt, Abell, Peterka and Woo 1978); "
+	case term > -1 && back:
+		return "a body on a wall would have 0 (Hunt, Abell, Peterka and Woo 1978), but here the flow turns back across the " +
+			"rim; "
 	}
-	if p.Euler == 1 && len(p.Rims) == 1 && p.BoundaryTerm == -1 && !symmetric {
-		kind = "body on a wall in a stream (Hunt, Abell, Peterka and Woo 1978), or any " + kind
-	}
-	return kind + ": " + demand
+	return ""
 }
 
 // closedRule names a closed body.

@@ -6,6 +6,7 @@ import (
 	"os"
 	"path/filepath"
 	"slices"
+	"strings"
 	"testing"
 
 	"shearprint/field"
@@ -38,10 +39,11 @@ func TestRealRuns(t *testing.T) {
 		in, out          int
 		strong           int // points above 0.1 % of the largest |tau|
 		strongByVertices int // the same where |tau| is compared at vertices
+		rule             string
 	}{
-		{"pod.ply", 3, 1, 0, 0, 4, 4},
-		{"radome.ply", 11, 11, 0, 2, 14, 20},
-		{"hut.ply", 27, 26, 2, 2, 0, 0},
+		{"pod.ply", 3, 1, 0, 0, 4, 4, "isolated body"},
+		{"radome.ply", 11, 11, 0, 2, 14, 20, "body on a wall"},
+		{"hut.ply", 27, 26, 2, 2, 0, 0, "turns back across the rim"},
 	} {
 		f := load(t, c.name)
 		s := find(t, f, topology.Options{})
@@ -56,6 +58,9 @@ func TestRealRuns(t *testing.T) {
 		}
 		if plus != c.plus || minus != c.minus {
 			t.Errorf("%s: %d of index +1 and %d of -1, want %d and %d", c.name, plus, minus, c.plus, c.minus)
+		}
+		if !strings.Contains(s.Ledger.Rule, c.rule) {
+			t.Errorf("%s: rule %q, want it to speak of %q", c.name, s.Ledger.Rule, c.rule)
 		}
 		in, out := 0, 0
 		for _, r := range s.Ledger.Parts[0].Rims {
