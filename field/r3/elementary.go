@@ -46,7 +46,8 @@ func atanUnit(x float64) float64 {
 	return math.Pi/4 + atanReduced((x-1)/(1+x))
 }
 
-// Atan2 returns the angle of (x, y) in (-pi, pi]; 0 for (0, 0), and NaN if either is NaN.
+// Atan2 returns the angle of (x, y) in (-pi, pi]; 0 for (0, 0), and NaN if either is NaN. A negative zero is a zero: unlike
+// math.Atan2, which gives -pi there, Atan2(-0, -1) is pi.
 func Atan2(y, x float64) float64 {
 	if x != x || y != y {
 		return math.NaN()
