@@ -10,7 +10,7 @@ import (
 // holds no measured numbers. The absolute bound keeps an unpacked file with all that is made from it below 1 GiB.
 const (
 	maxGrowth   = 200
-	maxUnpacked = 320 << 20
+	maxUnpacked = 256 << 20
 )
 
 // unpack returns the data, unpacked if it is gzipped.

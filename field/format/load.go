@@ -66,6 +66,10 @@ func Prepare(name string, data []byte, opt Options) (field.Raw, error) {
 			return field.Raw{}, err
 		}
 	}
+	if len(raw.Tris) > maxTriangles {
+		return field.Raw{}, src.fail("", "export the part of interest, or a coarser surface",
+			"%d triangles are more than the %d that can be held", len(raw.Tris), maxTriangles)
+	}
 	tellSign(&raw, h.stream)
 	return raw, nil
 }

@@ -17,6 +17,9 @@ func triangulate(src source, raw *field.Raw) error {
 	if len(raw.Points) < 3 {
 		return src.fail("", remedy, "%d points make no surface", len(raw.Points))
 	}
+	if len(raw.Points) > maxTriangulated {
+		return src.fail("", remedy, "%d points are too many to find their triangles", len(raw.Points))
+	}
 	u, v, thick := bestPlane(raw.Points)
 	if !(thick < flatness) {
 		return src.fail("", remedy, "a table has no triangles, its rows are no grid, and its points are not nearly planar "+

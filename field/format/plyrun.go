@@ -75,9 +75,6 @@ func (r *plyReader) finish() (field.Raw, error) {
 	return *raw, nil
 }
 
-// maxPoints is what 32-bit numbers can count with room for three half-edges per triangle and two triangles per point.
-const maxPoints = 1 << 28
-
 // unitComments reads comments such as "units SI: x y z [m], tau [Pa], p [Pa gauge], cp [-]".
 func unitComments(comments []string) map[string]string {
 	units := map[string]string{}

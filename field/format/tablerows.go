@@ -33,7 +33,7 @@ func (t *tableReader) rows() error {
 			continue
 		}
 		if row >= len(t.raw.Points) {
-			return t.fail(t.place(), "check the end of the file", "there are more rows than the table can hold")
+			return t.fail(t.place(), "export less, or a surface with its values", "a table may have %d rows", row)
 		}
 		next, err := t.row(at, row)
 		if err != nil {
