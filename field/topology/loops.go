@@ -31,7 +31,9 @@ type Loop struct {
 	Hodograph []Hodograph
 	// Tris lists the triangles that lie in the region as a whole, ascending.
 	Tris []int32
-	Note string // what is doubtful about the reading
+	// Moved is the largest distance by which a given point was moved to the surface.
+	Moved float64
+	Note  string // what is doubtful about the reading
 }
 
 // Hodograph is tau at one place of a loop.
@@ -41,6 +43,10 @@ type Hodograph struct {
 	Size  float64 // |tau|
 }
 
+// farOff is the distance of a loop's point from the surface, as a share of the run's diagonal, that is worth a word:
+// points read off a drawing are nearer.
+const farOff = 0.01
+
 // Loop walks from point to point, along the surface and back to the first, and reads how tau turns. The points are
 // moved to the nearest places of the surface. Counter-clockwise loops, seen from the fluid, have their region on the
 // left. The error says why there is no such loop.
@@ -48,13 +54,15 @@ func (s *Skeleton) Loop(through []r3.Vec) (*Loop, error) {
 	if len(through) < 3 {
 		return nil, errors.New("a loop takes at least three points")
 	}
+	l := &Loop{}
 	places := make([]field.Loc, len(through))
 	for i, p := range through {
 		if !p.Finite() {
 			return nil, fmt.Errorf("point %d of the loop is not a place", i+1)
 		}
-		loc, _ := s.Field.Nearest(p)
+		loc, distance := s.Field.Nearest(p)
 		places[i] = inside(loc)
+		l.Moved = math.Max(l.Moved, distance)
 	}
 	var legs []leg
 	for i, a := range places {
@@ -64,9 +72,11 @@ func (s *Skeleton) Loop(through []r3.Vec) (*Loop, error) {
 		}
 		legs = append(legs, way...)
 	}
-	l := &Loop{}
 	s.hodograph(l, legs)
 	s.region(l, legs)
+	if l.Note == "" && l.Moved > float64(farOff*s.Field.Diagonal()) {
+		l.Note = fmt.Sprintf("a point of the loop was %.3g away from the surface", l.Moved)
+	}
 	return l, nil
 }
 

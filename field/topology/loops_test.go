@@ -103,6 +103,24 @@ func TestLoopsAccount(t *testing.T) {
 	})
 }
 
+// Points beside the surface are moved to it, and far ones are told.
+func TestLoopTellsMovedPoints(t *testing.T) {
+	s := find(t, caseNamed("strained-sphere").Field(3000), topology.Options{})
+	for _, c := range []struct {
+		height float64
+		told   bool
+	}{{0.001, false}, {0.5, true}} {
+		way := circle(r3.Vec{X: 1 + c.height}, r3.Vec{X: 1}, 0.2, 8)
+		l, err := s.Loop(way)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if (l.Note != "") != c.told || l.Index != 1 || c.told && math.Abs(l.Moved-c.height) > 0.05 {
+			t.Errorf("%g above: moved by %g, index %g, note %q", c.height, l.Moved, l.Index, l.Note)
+		}
+	}
+}
+
 // A loop around the tube of the torus bounds nothing. Tau crosses it at right angles all along, and the loop is a
 // geodesic, so that nothing turns, up to what the mesh of this size makes of both (0.1).
 func TestLoopAroundHandle(t *testing.T) {
