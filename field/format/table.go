@@ -103,7 +103,8 @@ func quoteList(names []string) string {
 // plan allocates the columns and says where each goes. Rows cannot be more than lines, nor than the bytes hold cells.
 func (t *tableReader) plan() {
 	body := t.data[t.body:]
-	n := min(maxRows, bytes.Count(body, []byte{'\n'})+bytes.Count(body, []byte{'\r'})+1, len(body)/len(t.header)+1)
+	lines := bytes.Count(body, []byte{'\n'}) + bytes.Count(body, []byte{'\r'}) - bytes.Count(body, []byte("\r\n")) + 1
+	n := min(maxRows, lines, len(body)/len(t.header)+1)
 	t.action = make([]action, len(t.header))
 	vector := func(cols [3]int, v *[]r3.Vec) {
 		if cols[0] < 0 {
