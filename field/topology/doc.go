@@ -19,4 +19,16 @@
 // The index says that there is a point. A quadratic least-squares fit around it says where, gives the Jacobian, and the
 // errors of both; where a fit is impossible or contradicts the index, the linear triangle has to do, and the point says
 // so.
+//
+// # What is weak, and what is doubtful
+//
+// Robustness says by how much tau would have to change for a point to vanish: points cancel in groups whose indices sum
+// to zero, so a noise floor never upsets the ledger. Confidence says how sure the type is, from the scatter of the fit.
+// A point that another one is nearer to than three edges, or whose type the triangle contradicts, is not resolved by the
+// mesh; several points that a zero of second order (a monkey saddle, a dipole) is taken apart into are put together.
+//
+// # Loops and regions
+//
+// Along a closed way on the surface tau turns by what the points inside and the curvature inside account for; Loop reads
+// it, RegionOf does the same for any set of triangles, and Decide for a reading made by eye.
 package topology
