@@ -17,49 +17,69 @@ func (t Tri) At(b [3]float64) Vec {
 }
 
 // Nearest returns the barycentric weights of the triangle's point nearest to p. The weights are within [0,1] and sum to
-// one. Method: Voronoi regions of the corners and edges (Ericson, Real-Time Collision Detection, 2005, ch. 5.1.5, from
-// memory).
+// one. The foot of the perpendicular, where it is inside, and the nearest point of each edge are compared by distance, so
+// that a needle, whose normal is rounding error, still gives the right place.
 func (t Tri) Nearest(p Vec) [3]float64 {
-	ab, ac, ap := t[1].Sub(t[0]), t[2].Sub(t[0]), p.Sub(t[0])
-	d1, d2 := ab.Dot(ap), ac.Dot(ap)
-	if d1 <= 0 && d2 <= 0 {
-		return [3]float64{1, 0, 0}
+	if b, ok := t.foot(p); ok {
+		// Inside a triangle of sound shape nothing on the edges can be nearer.
+		n := t.Normal()
+		if e := t[1].Sub(t[0]); n.Dot(n) > soundShape*float64(e.Dot(e)*e.Dot(e)) {
+			return b
+		}
+		return t.nearer(p, b, t.onEdges(p))
 	}
-	bp := p.Sub(t[1])
-	d3, d4 := ab.Dot(bp), ac.Dot(bp)
-	if d3 >= 0 && d4 <= d3 {
-		return [3]float64{0, 1, 0}
-	}
-	vc := float64(d1*d4) - float64(d3*d2)
-	if vc <= 0 && d1 >= 0 && d3 <= 0 {
-		v := ratio(d1, d1-d3)
-		return [3]float64{1 - v, v, 0}
-	}
-	cp := p.Sub(t[2])
-	d5, d6 := ab.Dot(cp), ac.Dot(cp)
-	if d6 >= 0 && d5 <= d6 {
-		return [3]float64{0, 0, 1}
-	}
-	vb := float64(d5*d2) - float64(d1*d6)
-	if vb <= 0 && d2 >= 0 && d6 <= 0 {
-		w := ratio(d2, d2-d6)
-		return [3]float64{1 - w, 0, w}
-	}
-	va := float64(d3*d6) - float64(d5*d4)
-	if va <= 0 && d4-d3 >= 0 && d5-d6 >= 0 {
-		w := ratio(d4-d3, (d4-d3)+(d5-d6))
-		return [3]float64{0, 1 - w, w}
-	}
-	s := va + vb + vc
-	v, w := ratio(vb, s), ratio(vc, s)
-	return [3]float64{1 - v - w, v, w}
+	return t.onEdges(p)
 }
 
-func ratio(a, b float64) float64 {
-	if b == 0 {
-		return 0
+// soundShape is the square of twice the area over the square of the first edge's square below which a triangle is
+// a needle, whose perpendicular foot is not to be relied on.
+const soundShape = 1e-12
+
+func (t Tri) nearer(p Vec, a, b [3]float64) [3]float64 {
+	da, db := t.At(a).Sub(p), t.At(b).Sub(p)
+	if db.Dot(db) < da.Dot(da) {
+		return b
 	}
-	return a / b
+	return a
+}
+
+// foot returns the weights of the foot of the perpendicular from p, and whether it is inside.
+func (t Tri) foot(p Vec) ([3]float64, bool) {
+	n := t.Normal()
+	nn := n.Dot(n)
+	if nn == 0 {
+		return [3]float64{}, false
+	}
+	var b [3]float64
+	for k := range 3 {
+		u, v := t[(k+1)%3], t[(k+2)%3]
+		b[k] = v.Sub(u).Cross(p.Sub(u)).Dot(n) / nn
+		if !(b[k] >= 0) {
+			return b, false
+		}
+	}
+	sum := b[0] + b[1] + b[2]
+	return [3]float64{b[0] / sum, b[1] / sum, b[2] / sum}, true
+}
+
+// onEdges returns the weights of the nearest point of the three edges.
+func (t Tri) onEdges(p Vec) [3]float64 {
+	var best [3]float64
+	least := math.Inf(1)
+	for k := range 3 {
+		a, e := t[k], t[(k+1)%3].Sub(t[k])
+		u := 0.0
+		if ee := e.Dot(e); ee > 0 {
+			u = math.Min(1, math.Max(0, p.Sub(a).Dot(e)/ee))
+		}
+		d := a.AddScaled(u, e).Sub(p)
+		if dd := d.Dot(d); dd < least {
+			least = dd
+			best = [3]float64{}
+			best[k], best[(k+1)%3] = 1-u, u
+		}
+	}
+	return best
 }
 
 // Box is an axis-parallel box; an empty one has Min above Max.
