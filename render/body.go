@@ -10,15 +10,16 @@ import (
 // body is a field prepared for drawing. Its coordinates are turned against the field's by a fixed rotation about the
 // middle of the box, so that no plane or axis of the model runs along the lattice of the noise.
 type body struct {
-	field  *field.Field
-	center r3.Vec
-	turn   [3]r3.Vec // rows of the rotation
-	radius float64   // of a ball around the center that holds the surface
-	pos    []r3.Vec
-	normal [][3]float32
-	smooth []bool // the vertex's normal serves all its triangles; false at an edge
-	fine   level  // all triangles
-	coarse level  // fewer triangles of some of the same vertices, for moving frames; the same as fine for small meshes
+	field   *field.Field
+	center  r3.Vec
+	turn    [3]r3.Vec // rows of the rotation
+	radius  float64   // of a ball around the center that holds the surface
+	pos     []r3.Vec
+	normal  [][3]float32
+	smooth  []bool  // the vertex's normal serves all its triangles; false at an edge
+	fine    level   // all triangles
+	creases []int32 // half-edges of rims and sharp edges
+	coarse  level   // fewer triangles of some of the same vertices, for moving frames; the same as fine for small meshes
 }
 
 // level is a set of triangles between vertices of a body.
@@ -67,6 +68,7 @@ func newBody(f *field.Field) *body {
 		}
 	})
 	b.coarse = b.cluster()
+	b.creases = creasesOf(b)
 	return b
 }
 

@@ -49,6 +49,9 @@ type Renderer struct {
 	low, high float64
 	values    []float64
 	over      canvas
+	small     *typist
+	layout    layout
+	facing    []bool // per triangle: it shows its front
 }
 
 // stages are the keys of what the buffers hold: a stage is done anew where its key changes.

@@ -1,0 +1,83 @@
+package render
+
+// lineStyle is the form of a line, in points.
+type lineStyle struct {
+	width, halo float64
+	on, off     float64 // dashes; 0 for an unbroken line
+	dots        float64 // distance of the dots that mark an open line; 0 for none
+}
+
+// lineStyles tells separation from attachment by form: unbroken and bold against dashed. Neutral lines are thin.
+var lineStyles = [...]lineStyle{
+	NeutralSense:    {width: 1.1, halo: 0.9},
+	AttachmentSense: {width: 2.1, halo: 1.2, on: 8, off: 5},
+	SeparationSense: {width: 2.3, halo: 1.2},
+}
+
+func (c *colors) ofLine(s Sense) rgb {
+	switch s {
+	case SeparationSense:
+		return c.separation
+	case AttachmentSense:
+		return c.attachment
+	}
+	return c.line
+}
+
+// line draws one line: its halo below, its core above.
+func (c *canvas) line(curve []vertex, l *Line, col *colors, pixels float64) {
+	style := lineStyles[min(l.Sense, SeparationSense)]
+	width := style.width * pixels
+	if l.Chosen {
+		width *= 1.6
+	}
+	for i := range curve {
+		curve[i].width = width
+	}
+	pieces := [][]vertex{curve}
+	if style.on > 0 {
+		pieces = dashes(curve, style.on*pixels, style.off*pixels)
+	}
+	c.strokes(pieces, style.halo*pixels, col.halo, 0.85)
+	c.strokes(pieces, 0, col.ofLine(l.Sense), 1)
+	if l.Open {
+		const apart, size = 26, 2.6 // of the dots, in points
+		for i, d := range dashes(curve, apart*pixels, 0.01) {
+			if v := d[0]; i > 0 && v.alpha > 0.5 {
+				c.disc(v.x, v.y, (size+0.9)*pixels, col.halo, v.alpha)
+				c.disc(v.x, v.y, size*pixels, col.ofLine(l.Sense), v.alpha)
+			}
+		}
+	}
+}
+
+// strokes draws curves that may touch as one.
+func (c *canvas) strokes(pieces [][]vertex, extra float64, color rgb, alpha float64) {
+	box := emptyBounds()
+	for _, p := range pieces {
+		box.join(c.stroke(p, extra))
+	}
+	c.ink(box, color, alpha)
+}
+
+// comet draws a streamline that grows from a fine tail to a round head, so that its direction shows in a still picture.
+func (c *canvas) comet(curve []vertex, col *colors, pixels float64) {
+	const tail, head = 0.5, 2.6 // widths in points
+	total := 0.0
+	at := make([]float64, len(curve))
+	for i := 1; i < len(curve); i++ {
+		total += distance(curve[i-1], curve[i])
+		at[i] = total
+	}
+	for i := range curve {
+		s := at[i] / max(total, 1e-9)
+		curve[i].width = (tail + float64((head-tail)*s*s)) * pixels
+	}
+	c.strokes([][]vertex{curve}, 0.7*pixels, col.halo, 0.7)
+	c.strokes([][]vertex{curve}, 0, col.stream, 0.95)
+	if n := len(curve); n > 0 && curve[n-1].alpha > 0.5 && total > 6*pixels {
+		v := curve[n-1]
+		c.disc(v.x, v.y, 2.5*pixels, col.halo, v.alpha)
+		c.disc(v.x, v.y, 1.9*pixels, col.stream, v.alpha)
+	}
+}

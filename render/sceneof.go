@@ -1,0 +1,47 @@
+package render
+
+import (
+	"shearprint/field"
+	"shearprint/field/topology"
+)
+
+// SceneOf returns a scene with the skeleton's points as marks and its lines; the skeleton may be nil. Floor is the
+// skeleton's noise floor: texture below it fades.
+func SceneOf(f *field.Field, sk *topology.Skeleton) *Scene {
+	s := &Scene{Field: f}
+	if sk == nil {
+		return s
+	}
+	s.Floor = sk.Floor
+	for i := range sk.Points {
+		s.Marks = append(s.Marks, MarkOf(&sk.Points[i]))
+	}
+	for i := range sk.Lines {
+		s.Lines = append(s.Lines, LineOf(&sk.Lines[i]))
+	}
+	return s
+}
+
+// MarkOf returns the mark of a critical point, labelled with its id; a point that the mesh does not resolve is weak and
+// its label ends in a question mark.
+func MarkOf(p *topology.Point) Mark {
+	m := Mark{Loc: p.Loc, Label: p.ID, Half: p.Half, Weak: !p.Resolved}
+	m.Shape = [...]Shape{
+		topology.Node: NodeMark, topology.Focus: FocusMark, topology.Saddle: SaddleMark, topology.Degenerate: DegenerateMark,
+	}[min(p.Type, topology.Degenerate)]
+	m.Sense = [...]Sense{
+		topology.Neutral: NeutralSense, topology.Attachment: AttachmentSense, topology.Separation: SeparationSense,
+	}[min(p.Sense, topology.Separation)]
+	if m.Weak {
+		m.Label += "?"
+	}
+	return m
+}
+
+// LineOf returns the curve of a separatrix or of a separation or attachment line.
+func LineOf(l *topology.Line) Line {
+	sense := [...]Sense{
+		topology.NoKind: NeutralSense, topology.AttachmentLine: AttachmentSense, topology.SeparationLine: SeparationSense,
+	}[min(l.Kind, topology.SeparationLine)]
+	return Line{Locs: l.Locs, Sense: sense, Open: l.Type == topology.Open}
+}
