@@ -5,8 +5,6 @@ import (
 	"fmt"
 	"io"
 	"strconv"
-
-	"shearprint/field/topology"
 )
 
 // cell prints a number for a table file, with the digits of the JSON; nothing where it is infinite or unknown.
@@ -104,8 +102,8 @@ func (t *Topology) csvLines(c *tableWriter) {
 	c.row("id", "kind", "type", "from", "to", "length"+bracket(t.Run.LengthUnit), "strength", "stable", "reason")
 	for _, l := range t.Lines {
 		stable := ""
-		if l.Type == topology.Cycle {
-			stable = strconv.FormatBool(l.stable)
+		if l.Stable != nil {
+			stable = strconv.FormatBool(*l.Stable)
 		}
 		c.row(l.ID, l.Kind.String(), l.Type.String(), string(l.From), string(l.To), cell(l.Length), cell(l.Strength), stable,
 			l.Reason)

@@ -91,8 +91,10 @@ func (p *Probe) WriteText(w io.Writer) error {
 	slope := per(tau, u)
 	s.title("one surface point", p.Run)
 	s.line("")
-	s.line("  position     %s, %s from the given point", place(p.Position), with(p.Distance, u))
-	s.line("  triangle     %d, barycentric %s %s %s", p.Triangle, num(p.Weights[0]), num(p.Weights[1]), num(p.Weights[2]))
+	size := r3.Vec{X: float64(p.Position[0]), Y: float64(p.Position[1]), Z: float64(p.Position[2])}.Norm()
+	s.line("  position     %s, %s from the given point", place(p.Position), with(tidy(p.Distance, size), u))
+	s.line("  triangle     %d, barycentric %s %s %s", p.Triangle, num(tidy(p.Weights[0], 1)), num(tidy(p.Weights[1], 1)),
+		num(tidy(p.Weights[2], 1)))
 	s.line("  normal       %s", place(p.Normal))
 	s.line("  tau          %s, |tau| = %s", place(p.Tau), with(p.TauSize, tau))
 	s.line("  p            %s", known(p.P, p.Run.PUnit))

@@ -142,9 +142,21 @@ func bracket(unit Word) string {
 	return " [" + string(unit) + "]"
 }
 
-// place prints a point.
+// rounding is the share of a number's scale below which it prints as zero.
+const rounding = 1e-9
+
+// tidy returns x, or zero where it is rounding beside the scale.
+func tidy(x Number, scale float64) Number {
+	if math.Abs(float64(x)) < rounding*scale {
+		return 0
+	}
+	return x
+}
+
+// place prints a point or a vector. Components that are rounding beside the largest print as zero.
 func place(v Vec) string {
-	return "(" + num(v[0]) + ", " + num(v[1]) + ", " + num(v[2]) + ")"
+	scale := math.Max(math.Abs(float64(v[0])), math.Max(math.Abs(float64(v[1])), math.Abs(float64(v[2]))))
+	return "(" + num(tidy(v[0], scale)) + ", " + num(tidy(v[1], scale)) + ", " + num(tidy(v[2], scale)) + ")"
 }
 
 // count prints a number of things: "1 saddle", "3 saddles".

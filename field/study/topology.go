@@ -17,6 +17,7 @@ type Topology struct {
 	CancelledPoints int             `json:"cancelled_points"`
 	Points          []Point         `json:"points"`
 	Lines           []Line          `json:"lines"`
+	Basins          []Basin         `json:"basins"`
 	Ledger          Ledger          `json:"ledger"`
 	Findings        []field.Finding `json:"findings"` // what is doubtful, of the run and of the reading
 
@@ -56,9 +57,16 @@ type Line struct {
 	Reason   string            `json:"reason"`
 	// Angle is the angle between separation surface and wall at each point [degrees]; null where it is not known.
 	Angle  []Number `json:"angle"`
+	Stable *bool    `json:"stable"` // of a cycle, whether its neighbours approach it; null for other lines
 	Points []Vec    `json:"points"`
+}
 
-	stable bool
+// Basin is a region of the surface whose streamlines come from one point and go to one.
+type Basin struct {
+	Source    Word   `json:"source"` // a point's id; null for a rim, a cycle, or what could not be followed
+	Sink      Word   `json:"sink"`
+	Triangles int    `json:"triangles"`
+	Area      Number `json:"area"`
 }
 
 // Ledger is the balance of the points against what the topology of the surface demands.
@@ -111,7 +119,7 @@ func (s *Study) Topology(ctx context.Context, opt topology.Options) (*Topology, 
 	out := &Topology{
 		Schema: "shearprint/topology/1", Run: s.run(), Surface: s.surface(),
 		Floor: Number(sk.Floor), CancelledPoints: sk.Cancelled,
-		Points: []Point{}, Lines: []Line{}, Ledger: ledgerOf(sk.Ledger),
+		Points: []Point{}, Lines: []Line{}, Basins: []Basin{}, Ledger: ledgerOf(sk.Ledger),
 		Findings: []field.Finding{}, maxTau: s.f.MaxTau,
 	}
 	for _, list := range [][]field.Finding{s.f.Findings, roughness(s.sharpTurns()), sk.Findings} {
@@ -126,6 +134,9 @@ func (s *Study) Topology(ctx context.Context, opt topology.Options) (*Topology, 
 	}
 	for i := range sk.Lines {
 		out.Lines = append(out.Lines, s.lineOf(sk, &sk.Lines[i]))
+	}
+	for _, b := range sk.Regions {
+		out.Basins = append(out.Basins, Basin{idOf(sk, b.Source), idOf(sk, b.Sink), b.Triangles, Number(b.Area)})
 	}
 	return out, nil
 }
@@ -144,17 +155,22 @@ func matrixOf(m [2][2]float64) [2][2]Number {
 	return [2][2]Number{{Number(m[0][0]), Number(m[0][1])}, {Number(m[1][0]), Number(m[1][1])}}
 }
 
-func (s *Study) lineOf(sk *topology.Skeleton, l *topology.Line) Line {
-	id := func(i int) Word {
-		if i < 0 {
-			return ""
-		}
-		return Word(sk.Points[i].ID)
+// idOf returns the id of a point of the skeleton, "" for -1.
+func idOf(sk *topology.Skeleton, i int) Word {
+	if i < 0 {
+		return ""
 	}
+	return Word(sk.Points[i].ID)
+}
+
+func (s *Study) lineOf(sk *topology.Skeleton, l *topology.Line) Line {
 	out := Line{
-		ID: l.ID, Kind: l.Kind, Type: l.Type, From: id(l.From), To: id(l.To),
+		ID: l.ID, Kind: l.Kind, Type: l.Type, From: idOf(sk, l.From), To: idOf(sk, l.To),
 		Length: Number(l.Length), Strength: Number(l.Strength), Reason: l.Reason,
-		Points: make([]Vec, len(l.Locs)), stable: l.Stable,
+		Points: make([]Vec, len(l.Locs)),
+	}
+	if l.Type == topology.Cycle {
+		out.Stable = &l.Stable
 	}
 	for i, loc := range l.Locs {
 		out.Points[i] = vecOf(s.f.Position(loc))

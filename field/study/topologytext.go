@@ -1,6 +1,7 @@
 package study
 
 import (
+	"cmp"
 	"fmt"
 	"io"
 	"math"
@@ -167,37 +168,18 @@ func (t *Topology) writeLines(s *sheet, kind topology.Kind, title string) {
 	}
 }
 
-// describe tells of one line in a sentence: type, ends, length, place, reason.
+// describe tells of one line: type and kind with their reason, length, place, angle of the separation surface.
 func (l *Line) describe(run Run) string {
-	var b strings.Builder
-	b.WriteString(l.Type.String())
-	if l.Type == topology.Cycle {
-		if l.stable {
-			b.WriteString(", neighbours approach it")
-		} else {
-			b.WriteString(", neighbours leave it")
-		}
-	}
-	end := func(id Word) string {
-		if id == "" {
-			return "no critical point"
-		}
-		return string(id)
-	}
-	if l.From != "" || l.To != "" {
-		fmt.Fprintf(&b, ", from %s to %s", end(l.From), end(l.To))
-	}
-	fmt.Fprintf(&b, ", %s long", with(l.Length, run.LengthUnit))
-	if n := len(l.Points); n > 0 {
-		fmt.Fprintf(&b, ", %s to %s", place(l.Points[0]), place(l.Points[n-1]))
+	words := cmp.Or(l.Reason, l.Type.String()) + ". " + with(l.Length, run.LengthUnit) + " long"
+	if n := len(l.Points); n > 0 && l.Type != topology.Cycle {
+		words += fmt.Sprintf(", from %s to %s", place(l.Points[0]), place(l.Points[n-1]))
+	} else if n > 0 {
+		words += ", through " + place(l.Points[0])
 	}
 	if lo, hi, ok := l.angles(); ok {
-		fmt.Fprintf(&b, "; the surface that leaves the wall stands at %.0f to %.0f degrees to it", lo, hi)
+		words += fmt.Sprintf("; the surface that leaves the wall stands at %.0f to %.0f degrees to it", lo, hi)
 	}
-	if l.Reason != "" {
-		b.WriteString(": " + strings.TrimSuffix(l.Reason, "."))
-	}
-	return b.String() + "."
+	return words + "."
 }
 
 func (l *Line) angles() (lo, hi float64, ok bool) {
