@@ -135,9 +135,9 @@ func (r *Renderer) Frame(ctx context.Context, s *Scene, cam Camera, w, h int, q 
 	f.W, f.H, f.Quality, f.Times = w, h, q, Times{}
 	r.lens = cam.Lens(w, h)
 	job := job{scene: s, lens: r.lens.resize(1 / float64(k)), w: (w + k - 1) / k, h: (h + k - 1) / k,
-		pixels: s.scale(), coarse: q == Moving}
+		pixels: s.scale(), quality: q}
 	if q == Moving {
-		job.pixels = max(s.scale()*0.75/float64(k), 0.75)
+		job.pixels = max(s.scale()*movingDetail/float64(k), movingDetail)
 	}
 	job.bottom = job.h
 	if err := r.stage(ctx, &job); err != nil {
@@ -157,6 +157,68 @@ func (r *Renderer) Frame(ctx context.Context, s *Scene, cam Camera, w, h int, q 
 	f.Times.lap(&f.Times.Mix, start)
 	return f, err
 }
+
+// movingDetail is the size of the kernel and of the noise of a moving frame, in pixels of its planes per point: smaller
+// than in a still frame, so that enough lines remain across the fewer pixels.
+const movingDetail = 0.75
+
+// Rows draws rows top..bottom of the still frame of w x h pixels, without its overlay: what one of several workers does.
+// The rows are the same bytes as those of the whole frame. The result's H is bottom-top; bounds that are multiples of 120
+// cost least.
+func (r *Renderer) Rows(ctx context.Context, s *Scene, cam Camera, w, h, top, bottom int) (*Frame, error) {
+	if err := checkSize(w, h); err != nil {
+		return nil, err
+	}
+	top, bottom = max(top, 0), min(bottom, h)
+	if top >= bottom {
+		return nil, errors.New("no rows to draw: give 0 <= top < bottom <= the picture's height")
+	}
+	f := &r.frame
+	f.W, f.H, f.Quality, f.Times = w, bottom-top, Still, Times{}
+	r.lens = cam.Lens(w, h)
+	if err := r.stage(ctx, &job{scene: s, lens: r.lens, w: w, h: h, top: top, bottom: bottom,
+		pixels: s.scale(), quality: Still}); err != nil {
+		return nil, err
+	}
+	start := time.Now()
+	l := &f.Layers
+	l.Factor = 1
+	l.Overlay = fitted(l.Overlay, 4*w*f.H)
+	clear(l.Overlay)
+	f.Pix = fitted(f.Pix, 4*w*f.H)
+	err := bands(ctx, 0, f.H, 60, func(from, to int) { l.mixRows(f.Pix, w, f.H, s.Phase, from, to) })
+	f.Times.lap(&f.Times.Mix, start)
+	return f, err
+}
+
+// Overlay returns what lies above the surface in the still frame of w x h pixels: RGBA, premultiplied. Laid over the rows
+// of Rows it gives the pixels of Frame. The buffer is used again by the next call.
+func (r *Renderer) Overlay(ctx context.Context, s *Scene, cam Camera, w, h int) ([]byte, error) {
+	if err := checkSize(w, h); err != nil {
+		return nil, err
+	}
+	k := 1
+	for w*h > sightPixels*k*k {
+		k++
+	}
+	f := &r.frame
+	f.Quality, f.Times = Still, Times{}
+	r.lens = cam.Lens(w, h)
+	job := job{scene: s, lens: r.lens.resize(1 / float64(k)), w: (w + k - 1) / k, h: (h + k - 1) / k,
+		pixels: s.scale(), quality: Still, sightOnly: true}
+	job.bottom = job.h
+	if err := r.stage(ctx, &job); err != nil {
+		return nil, err
+	}
+	l := &f.Layers
+	l.Factor = k
+	l.Overlay = fitted(l.Overlay, 4*w*h)
+	r.over.reset(l.Overlay, w, h)
+	return l.Overlay, r.overlay(ctx, s, &r.over, float64(k))
+}
+
+// sightPixels is the number of pixels beyond which what can be seen is decided on a smaller raster.
+const sightPixels = 10_000_000
 
 func (t *Times) lap(into *time.Duration, since time.Time) time.Time {
 	now := time.Now()
@@ -184,7 +246,8 @@ type job struct {
 	w, h        int
 	top, bottom int // the rows that are wanted
 	pixels      float64
-	coarse      bool
+	quality     Quality
+	sightOnly   bool // no texture
 }
 
 // stage brings the plate and the layers up to date for the rows of the job.
@@ -199,16 +262,19 @@ func (r *Renderer) stage(ctx context.Context, j *job) error {
 	}
 	b := r.body
 	level := &b.fine
-	if j.coarse {
+	coarse := j.quality == Moving
+	if coarse {
 		level = &b.coarse
 	}
 	start = f.Times.lap(&f.Times.Prepare, start)
 	sm := smear{half: max(int(math.Floor(kernelLength*j.pixels+0.5)), 2), animate: s.Animate}
 	sm.serve = 2 * sm.half
-	flow := s.Flow == Texture
+	sm.soften = j.quality == Still
+	flow := s.Flow == Texture && !j.sightOnly
 	// The convolution needs whole bands, and rows around them that its streamlines may reach.
-	from, to := j.top/bandRows*bandRows, min((j.bottom+bandRows-1)/bandRows*bandRows, j.h)
-	raster := rasterKey{s.Field, j.lens, j.w, j.h, max(from-sm.reach()-4, 0), min(to+sm.reach()+4, j.h), j.coarse}
+	// Softening needs a row of the neighbouring bands.
+	from, to := max(j.top/bandRows-1, 0)*bandRows, min(((j.bottom+bandRows-1)/bandRows+1)*bandRows, j.h)
+	raster := rasterKey{s.Field, j.lens, j.w, j.h, max(from-sm.reach()-4, 0), min(to+sm.reach()+4, j.h), coarse}
 	lens := b.lens(j.lens)
 	p := &r.plate
 	if r.kept.raster != raster {
@@ -230,7 +296,7 @@ func (r *Renderer) stage(ctx context.Context, j *job) error {
 	start = f.Times.lap(&f.Times.Surface, start)
 	texture := textureKey{surface, sm, flow}
 	if r.kept.texture != texture {
-		if err := r.texture(ctx, texture, from, to); err != nil {
+		if err := r.texture(ctx, texture, from, to, j.top, j.bottom); err != nil {
 			return err
 		}
 		r.kept.texture = texture
@@ -244,21 +310,27 @@ func (r *Renderer) stage(ctx context.Context, j *job) error {
 		}
 		r.kept.scalar = scalar
 	}
-	r.layers(s, sm, flow)
-	err := bands(ctx, 0, p.bottom-p.top, 64, func(from, to int) { f.Layers.quantize(p, from, to, r.low, r.high) })
+	r.layers(s, sm, flow, j.top-p.top, j.bottom-p.top)
+	err := bands(ctx, j.top-p.top, j.bottom-p.top, 64, func(from, to int) {
+		f.Layers.quantize(p, from, to, j.top-p.top, r.low, r.high)
+	})
 	f.Times.lap(&f.Times.Scalar, start)
 	return err
 }
 
-// texture convolves rows from..to, or leaves them without texture.
-func (r *Renderer) texture(ctx context.Context, key textureKey, from, to int) error {
-	if key.flow {
-		return r.plate.convolve(ctx, key.smear, from, to)
+// texture convolves rows from..to and softens rows top..bottom, or leaves them without texture.
+func (r *Renderer) texture(ctx context.Context, key textureKey, from, to, top, bottom int) error {
+	p := &r.plate
+	if !key.flow {
+		for i := range p.tex[0] {
+			p.tex[0][i] = 128
+		}
+		return nil
 	}
-	for i := range r.plate.tex[0] {
-		r.plate.tex[0][i] = 128
+	if err := p.convolve(ctx, key.smear, from, to); err != nil || !key.smear.soften {
+		return err
 	}
-	return nil
+	return p.soften(ctx, key.smear, top-p.top, bottom-p.top)
 }
 
 // limits brings the ends of the colours up to date.
@@ -274,20 +346,19 @@ func (r *Renderer) limits(s *Scene) {
 	r.spread = key
 }
 
-// layers hands the planes of the plate to the frame and fills the tables.
-func (r *Renderer) layers(s *Scene, sm smear, flow bool) {
+// layers hands rows from..to of the plate's planes to the frame and fills the tables.
+func (r *Renderer) layers(s *Scene, sm smear, flow bool, from, to int) {
 	p, l := &r.plate, &r.frame.Layers
 	c := s.Theme.colors()
-	l.W, l.H = p.w, p.bottom-p.top
-	l.Texture, l.Shade = p.tex[0], p.shade
+	l.W, l.H = p.w, to-from
+	lo, hi := from*p.w, to*p.w
+	l.Texture, l.Shade = p.tex[0][lo:hi], p.shade[lo:hi]
 	l.Cos, l.Sin, l.Animated = nil, nil, false
 	if flow && sm.animate {
-		l.Cos, l.Sin, l.Animated = p.tex[1], p.tex[2], true
+		l.Cos, l.Sin, l.Animated = p.tex[1][lo:hi], p.tex[2][lo:hi], true
 	}
-	l.Scalar, l.Mask = fitted(l.Scalar, len(p.shade)), fitted(l.Mask, len(p.shade))
-	q := s.Quantity.of(s.Field)
-	none := c.none
-	for i, x := range s.Theme.palette(q).table(r.low, r.high, s.Bands, none) {
+	l.Scalar, l.Mask = fitted(l.Scalar, hi-lo), fitted(l.Mask, hi-lo)
+	for i, x := range s.Theme.palette(s.Quantity.of(s.Field)).table(r.low, r.high, s.Bands, c.none) {
 		l.Table[i] = x
 	}
 	l.Curve = contrastCurve()

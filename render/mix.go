@@ -53,21 +53,22 @@ func contrastCurve() (curve [256]uint8) {
 	return curve
 }
 
-// quantize fills Scalar and Mask from the plate's planes.
-func (l *Layers) quantize(p *plate, from, to int, lo, hi float64) {
+// quantize fills Scalar and Mask from rows from..to of the plate; the planes begin with the plate's row first.
+func (l *Layers) quantize(p *plate, from, to, first int, lo, hi float64) {
 	scale := float32(254 / (hi - lo))
 	low := float32(lo)
 	for i := from * p.w; i < to*p.w; i++ {
-		l.Mask[i] = 0
+		o := i - first*p.w
+		l.Mask[o] = 0
 		if p.hits[i].tri != noHit {
-			l.Mask[i] = 255
+			l.Mask[o] = 255
 		}
 		s := p.scalar[i]
 		if s != s {
-			l.Scalar[i] = 0
+			l.Scalar[o] = 0
 			continue
 		}
-		l.Scalar[i] = uint8(min(max(float32((s-low)*scale)+1.5, 1), 255))
+		l.Scalar[o] = uint8(min(max(float32((s-low)*scale)+1.5, 1), 255))
 	}
 }
 

@@ -22,6 +22,7 @@ type plate struct {
 	steps       []uint8    // see stepRight, stepDown
 	scalar      []float32  // NaN where there is no surface or no value
 	tex         [3][]uint8 // see Layers
+	soft        []uint8
 	spots       []spot
 	scratch     sync.Pool
 	counts      struct{ tried, written int }
