@@ -39,9 +39,6 @@ func TestWeldingAgainstAllPairs(t *testing.T) {
 			}
 		}
 		raw := field.Raw{Points: points, Tau: make([]r3.Vec, len(points))}
-		for i := range points {
-			raw.Tau[i] = r3.Vec{X: 1}
-		}
 		for i := range int32(len(points) - 2) {
 			raw.Tris = append(raw.Tris, [3]int32{0, 1, i + 2})
 		}

@@ -12,7 +12,7 @@ import (
 // a half; forces with the pressure in them, nearly all.
 const (
 	normalDoubtful = 0.15
-	normalRefused  = 0.75
+	normalRefused  = 0.9
 )
 
 // normalContent measures how much of tau is not tangential, tells it, and refuses vectors that are no wall shear
