@@ -29,7 +29,7 @@ type columns struct {
 	labels           []label
 	x, tau, n        [3]int
 	p, cp            int
-	i, j             int // structured grid
+	i, j, k          int // structured grid
 	area             int
 	tauName          string // base name of tau, as found
 	coefficient      bool   // tau is a skin-friction coefficient
@@ -47,7 +47,7 @@ const maxColumns = 4096
 // matchColumns finds the quantities among the names. Whether what is missing matters is for the caller to say.
 func matchColumns(src source, names []string, opt Options) columns {
 	none := [3]int{-1, -1, -1}
-	c := columns{x: none, tau: none, n: none, p: -1, cp: -1, i: -1, j: -1, area: -1}
+	c := columns{x: none, tau: none, n: none, p: -1, cp: -1, i: -1, j: -1, k: -1, area: -1}
 	c.labels = make([]label, len(names))
 	for i, n := range names {
 		c.labels[i] = parseLabel(n)
@@ -58,6 +58,7 @@ func matchColumns(src source, names []string, opt Options) columns {
 	c.n, _ = c.vector(normalNames, 3)
 	c.area = c.scalar([]string{"area", "facearea", "cellarea"})
 	c.i, c.j = c.scalar([]string{"i", "iindex", "indexi"}), c.scalar([]string{"j", "jindex", "indexj"})
+	c.k = c.scalar([]string{"k", "kindex", "indexk"})
 	c.missing[0] = c.findTau(src, opt.Tau)
 	c.p, c.missing[1] = c.userScalar(src, "--p", opt.P, pNames)
 	c.cp, c.missing[2] = c.userScalar(src, "--cp", opt.Cp, cpNames)

@@ -55,7 +55,7 @@ func (c *columns) velocityHint() string {
 // tellUnused says which columns of a table nothing was taken from.
 func (c *columns) tellUnused(raw *field.Raw) {
 	used := make([]bool, len(c.labels))
-	for _, col := range [...]int{c.x[0], c.x[1], c.x[2], c.tau[0], c.tau[1], c.tau[2], c.p, c.cp, c.i, c.j} {
+	for _, col := range [...]int{c.x[0], c.x[1], c.x[2], c.tau[0], c.tau[1], c.tau[2], c.p, c.cp, c.i, c.j, c.k} {
 		if col >= 0 {
 			used[col] = true
 		}

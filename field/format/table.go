@@ -49,7 +49,7 @@ type tableReader struct {
 	columns
 	data []byte
 	raw  field.Raw
-	grid [2][]float64 // the numbers i and j of a structured grid, per row; nil where there are none
+	grid [3][]float64 // the numbers i, j and k of a structured grid, per row; nil where there are none
 
 	action []action // per column
 	line   int
@@ -130,6 +130,7 @@ func (t *tableReader) plan() {
 	if t.i >= 0 && t.j >= 0 {
 		number(t.i, &t.grid[0])
 		number(t.j, &t.grid[1])
+		number(t.k, &t.grid[2])
 	}
 }
 
@@ -148,4 +149,5 @@ func (t *tableReader) cut(n int) {
 	short(&t.raw.Cp)
 	short(&t.grid[0])
 	short(&t.grid[1])
+	short(&t.grid[2])
 }

@@ -189,6 +189,16 @@ func TestTableGridByIndices(t *testing.T) {
 	if len(f.Points) != 48 || len(f.Tris) != 2*(36-4) || f.Euler() != 0 || len(f.Rims) != 2 {
 		t.Errorf("%d points, %d triangles, chi %d, %d rims", len(f.Points), len(f.Tris), f.Euler(), len(f.Rims))
 	}
+	// A surface of a volume's grid carries one constant number; a column k of something else is none.
+	for header, row := range map[string]string{"i,j,k": "%d,7,%d", "i,k,j": "7,%d,%d", "j,i,k": "%d,%d,0.25"} {
+		text := header + ",x,y,z,tau_x,tau_y,tau_z\n"
+		for k := range 12 {
+			text += fmt.Sprintf(row+",%d,%d,0,1,0,0\n", k%4, k/4, k%4, k/4)
+		}
+		if f := load(t, "g.csv", []byte(text), format.Options{}); len(f.Tris) != 12 || f.Euler() != 1 {
+			t.Errorf("%s: %d triangles: %+v", header, len(f.Tris), f.Findings)
+		}
+	}
 	for _, c := range []struct{ rows, want string }{
 		{"1;1;0;0;0;1;0;0\n1;1;1;0;0;1;0;0\n2;2;1;1;0;1;0;0\n", "repeat"},
 		{"1;1;0;0;0;1;0;0\n1e9;1e9;1;0;0;1;0;0\n", "would make a grid"},
