@@ -1,9 +1,6 @@
 package format
 
-import (
-	"shearprint/field"
-	"shearprint/field/r3"
-)
+import "shearprint/field"
 
 // connect gives values without triangles their surface: opt.Surface if there is one, else the grid that the table's own
 // numbers i and j or the order of its rows tell, else, for nearly planar points, the Delaunay triangles.
