@@ -20,7 +20,7 @@ func (t *Topology) WriteText(w io.Writer) error {
 	t.writePoints(s)
 	t.writeLines(s, topology.SeparationLine, "What separates")
 	t.writeLines(s, topology.AttachmentLine, "What attaches")
-	t.writeLines(s, topology.NoKind, "Other lines of the skeleton")
+	t.writeOthers(s)
 	t.writeDoubts(s)
 	return s.err
 }
@@ -162,9 +162,24 @@ func (t *Topology) writeLines(s *sheet, kind topology.Kind, title string) {
 		}
 		s.para(fmt.Sprintf("  %-4s ", l.ID), l.describe(t.Run))
 	}
-	if first && kind != topology.NoKind {
+	if first {
 		s.heading(title)
 		s.line("  no line was found")
+	}
+}
+
+// writeOthers lists the lines that neither separate nor attach clearly.
+func (t *Topology) writeOthers(s *sheet) {
+	rows := [][]string{{"id", "type", "from", "to", "length" + bracket(t.Run.LengthUnit)}}
+	for _, l := range t.Lines {
+		if l.Kind == topology.NoKind {
+			rows = append(rows, []string{l.ID, l.Type.String(), cmp.Or(string(l.From), "none"), cmp.Or(string(l.To), "none"),
+				num(l.Length)})
+		}
+	}
+	if len(rows) > 1 {
+		s.heading("Other lines of the skeleton: beside them streamlines neither close in nor part clearly")
+		s.table(rows)
 	}
 }
 
