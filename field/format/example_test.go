@@ -22,7 +22,8 @@ func ExampleLoad() {
 		fmt.Println(err)
 		return
 	}
-	fmt.Printf("%s: %d triangles of %g m2, tau up to %.3g %s\n", f.Name, len(f.Tris), f.Parts[0].Area, f.MaxTau, f.Units.Tau)
+	fmt.Printf("%s: %d triangles of %g m2, tau up to %.3g %s\n", f.Name, len(f.Tris), f.Parts[0].Area, f.MaxTau,
+		f.Units.Tau)
 	for _, x := range f.Findings {
 		fmt.Printf("%s: %s\n", x.Level, x.Text)
 	}

@@ -22,8 +22,8 @@ func addCells(raw *field.Raw, n, rows int, at func(i, j int) int32) {
 	}
 }
 
-// gridAxes returns the two of the numbers i, j and k that vary; i and j where that does not decide. A column k that holds
-// no grid numbers (it may be the turbulent energy) does not count.
+// gridAxes returns the two of the numbers i, j and k that vary; i and j where that does not decide. A column k that
+// holds no grid numbers (it may be the turbulent energy) does not count.
 func (t *tableReader) gridAxes() [2][]float64 {
 	var vary [][]float64
 	for _, g := range t.grid {

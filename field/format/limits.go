@@ -1,7 +1,7 @@
 package format
 
-// Bounds that keep any input, with all that is made from it, within 1 GiB and 20 seconds. Headers are checked against the
-// bytes that exist besides; these bounds are for files that are what they say.
+// Bounds that keep any input, with all that is made from it, within 1 GiB and 20 seconds. Headers are checked against
+// the bytes that exist besides; these bounds are for files that are what they say.
 const (
 	// maxTriangles of a run: reading and building take about 170 bytes for each.
 	maxTriangles = 5_500_000

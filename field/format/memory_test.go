@@ -11,8 +11,8 @@ import (
 	"shearprint/field/format"
 )
 
-// Reading takes at most six times the file's size, the file's own bytes counted. All that is ever allocated is measured,
-// which is more than the peak.
+// Reading takes at most six times the file's size, the file's own bytes counted. All that is ever allocated is
+// measured, which is more than the peak.
 func TestMemoryOfReading(t *testing.T) {
 	raw := sphereRaw(60_000)
 	var glb, table bytes.Buffer
