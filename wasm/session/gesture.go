@@ -1,0 +1,94 @@
+package session
+
+import (
+	"fmt"
+	"math"
+
+	"shearprint/field/r3"
+	"shearprint/render"
+)
+
+// Gesture is a small movement of hand or key on the stage.
+type Gesture struct {
+	Kind   string  `json:"kind"`   // "orbit", "pan" or "zoom"
+	DX     float64 `json:"dx"`     // orbit, pan: movement to the right [CSS pixels]
+	DY     float64 `json:"dy"`     // downward
+	Factor float64 `json:"factor"` // zoom: above 1 comes closer
+	X      float64 `json:"x"`      // zoom: the place that stays [CSS pixels]
+	Y      float64 `json:"y"`
+}
+
+// largestStep bounds the factor of one zoom.
+const largestStep = 16
+
+// Check implements the check of Read.
+func (g Gesture) Check() error {
+	if !finite(g.DX, g.DY, g.Factor, g.X, g.Y) {
+		return fmt.Errorf("a gesture without a number")
+	}
+	switch g.Kind {
+	case "orbit", "pan":
+		return nil
+	case "zoom":
+		if g.Factor >= 1.0/largestStep && g.Factor <= largestStep {
+			return nil
+		}
+		return fmt.Errorf("a zoom by %g", g.Factor)
+	}
+	return fmt.Errorf("there is no gesture %q", g.Kind)
+}
+
+// turnAcross is the angle [rad] by which a drag over the height of the stage turns the body.
+const turnAcross = 0.9 * math.Pi
+
+// zoomRange bounds the distance of the eye from its target, in diagonals of the run: from a single face of a fine mesh to
+// a body that is a dot.
+var zoomRange = [2]float64{1e-5, 50}
+
+// Move returns the camera after the gesture on a stage of that height [CSS pixels]. at is the place under the pointer of a
+// zoom; diagonal the size of the run.
+func (g Gesture) Move(c render.Camera, height float64, at r3.Vec, diagonal float64) render.Camera {
+	height = max(height, 1)
+	switch g.Kind {
+	case "orbit":
+		// The body follows the hand: the eye goes the other way.
+		return c.Orbit(-g.DX/height*turnAcross, g.DY/height*turnAcross)
+	case "pan":
+		return c.Pan(g.DX/height, g.DY/height)
+	}
+	d := c.At.Sub(c.From).Norm()
+	factor := g.Factor
+	if d > 0 && diagonal > 0 {
+		factor = min(factor, max(1, d/(zoomRange[0]*diagonal)))
+		factor = max(factor, min(1, d/(zoomRange[1]*diagonal)))
+	}
+	return c.Zoom(factor, at)
+}
+
+// shownAround is the height that Toward shows around a point, in diagonals of the run: enough to recognise the place.
+const shownAround = 0.16
+
+// Toward returns a camera that looks at a place of the surface against its normal, leaned a little towards the way the
+// given camera looks, so that the place is seen as a place of a body.
+func Toward(c render.Camera, at, normal r3.Vec, diagonal float64) render.Camera {
+	back := c.From.Sub(c.At).Unit()
+	way := normal.Unit().Scale(1).AddScaled(0.35, back)
+	if way.Norm() < 0.1 { // seen from behind
+		way = normal
+	}
+	way = way.Unit()
+	if way == (r3.Vec{}) {
+		way = back
+	}
+	d := c.At.Sub(c.From).Norm()
+	if h := c.Height(); h > 0 && d > 0 {
+		d *= shownAround * diagonal / h
+	}
+	out := c
+	out.At, out.From = at, at.AddScaled(d, way)
+	// Upright where that can be told, else as it is now.
+	if math.Abs(way.Z) < 0.95 {
+		out.Up = r3.Vec{Z: 1}
+	}
+	return out
+}
