@@ -12,32 +12,21 @@ import (
 // OBJ holds points and polygons as text: it serves as --surface. Lines other than v and f carry nothing that matters
 // here.
 
-// isOBJ tells the text by its first lines: each begins with a word of the format, and one of them is a point.
+// isOBJ tells the text by a line of a point, "v 1 2 3", near its beginning: no table's row begins so.
 func isOBJ(data []byte) bool {
-	words := map[string]bool{"v": true, "vn": true, "vt": true, "f": true, "o": true, "g": true, "s": true, "usemtl": true,
-		"mtllib": true, "l": true, "p": true}
-	const lines, bytesAsked = 200, 1 << 16
-	at, points := 0, 0
-	head := data[:min(len(data), bytesAsked)]
-	for n := 0; n < lines && at < len(head); n++ {
+	const sample = 1 << 16
+	head := data[:min(len(data), sample)]
+	for at := 0; at < len(head); {
 		line, next := cutLine(head, at)
 		at = next
-		if at >= len(head) && len(head) < len(data) {
-			break // a line that the sample cuts
-		}
 		f := bytes.Fields(line)
-		switch {
-		case len(f) == 0 || f[0][0] == '#':
-		case !words[string(f[0])]:
-			return false
-		case string(f[0]) == "v" && len(f) >= 4:
-			if _, ok := parseNumber(f[1], '.'); !ok {
-				return false
-			}
-			points++
+		if len(f) < 4 || string(f[0]) != "v" {
+			continue
 		}
+		_, number := parseNumber(f[1], '.')
+		return number
 	}
-	return points > 0
+	return false
 }
 
 func readOBJ(name string, data []byte, _ Options) (field.Raw, error) {
