@@ -2,6 +2,7 @@ package render
 
 import (
 	"math"
+	"slices"
 
 	"shearprint/field"
 	"shearprint/field/r3"
@@ -15,11 +16,10 @@ type body struct {
 	turn    [3]r3.Vec // rows of the rotation
 	radius  float64   // of a ball around the center that holds the surface
 	pos     []r3.Vec
-	normal  [][3]float32
-	smooth  []bool  // the vertex's normal serves all its triangles; false at an edge
-	fine    level   // all triangles
-	creases []int32 // half-edges of rims and sharp edges
-	coarse  level   // fewer triangles of some of the same vertices, for moving frames; the same as fine for small meshes
+	normal  [][4]float32 // the fourth is 1 on a sharp edge, where the normal does not serve the triangles, else 0
+	fine    level        // all triangles
+	creases []int32      // half-edges of rims and sharp edges
+	coarse  level        // fewer triangles of some of the same vertices, for moving frames; the same as fine for small meshes
 }
 
 // level is a set of triangles between vertices of a body.
@@ -27,6 +27,7 @@ type level struct {
 	tris [][3]int32
 	tau  [][9]float32 // tau at the three corners, in the triangle's plane, in body coordinates
 	cull []bool       // the back is never seen: the triangle's part has no rim
+	used []int32      // the vertices; nil for all
 }
 
 // creaseCos is the cosine of the angle between a triangle and its vertex normal above which the vertex is taken to lie on
@@ -37,19 +38,18 @@ func newBody(f *field.Field) *body {
 	box := r3.BoxOf(f.Points)
 	b := &body{field: f, center: box.Center(), radius: box.Diagonal() / 2, turn: latticeTurn()}
 	b.pos = make([]r3.Vec, len(f.Points))
-	b.normal = make([][3]float32, len(f.Points))
-	b.smooth = make([]bool, len(f.Points))
+	b.normal = make([][4]float32, len(f.Points))
 	field.Parallel(len(f.Points), func(from, to int) {
 		for v := from; v < to; v++ {
 			b.pos[v] = b.point(f.Points[v])
-			b.normal[v] = single(b.vector(f.Normals[v]))
-			b.smooth[v] = true
+			n := single(b.vector(f.Normals[v]))
+			copy(b.normal[v][:], n[:])
 			if f.Out[v] < 0 {
 				continue
 			}
 			for h := range f.Fan(int32(v)) {
 				if f.Corner(h/3).Normal().Unit().Dot(f.Normals[v]) < creaseCos {
-					b.smooth[v] = false
+					b.normal[v][3] = 1
 				}
 			}
 		}
@@ -133,7 +133,7 @@ func (b *body) cluster() level {
 	var count []float64
 	for v, p := range b.pos {
 		k := key{int32(math.Floor(p.X / cell)), int32(math.Floor(p.Y / cell)), int32(math.Floor(p.Z / cell)), 0}
-		for i, x := range b.normal[v] {
+		for i, x := range b.normal[v][:3] {
 			if x < 0 {
 				k.octant |= 1 << i
 			}
@@ -176,5 +176,11 @@ func (b *body) cluster() level {
 		}
 		l.tau = append(l.tau, tau)
 	}
+	for _, v := range chosen {
+		if v >= 0 {
+			l.used = append(l.used, v)
+		}
+	}
+	slices.Sort(l.used)
 	return l
 }

@@ -54,7 +54,7 @@ func (c Camera) Height() float64 {
 // Orbit turns the camera about At: by yaw [rad] about the vertical, positive moving the eye to the right, and by pitch
 // [rad], positive moving it up. The eye stops short of passing over the poles, so that up stays up.
 func (c Camera) Orbit(yaw, pitch float64) Camera {
-	right, up, forward := c.axes()
+	_, up, forward := c.axes()
 	elevation := r3.Atan2(-forward.Dot(vertical), r3.Hypot(forward.X, forward.Y))
 	if up.Dot(vertical) < 0 { // hanging upside down: leave it free
 		elevation = 0
@@ -68,7 +68,6 @@ func (c Camera) Orbit(yaw, pitch float64) Camera {
 	turn := func(v r3.Vec) r3.Vec {
 		return r3.Vec{X: float64(k*v.X) - float64(s*v.Y), Y: float64(s*v.X) + float64(k*v.Y), Z: v.Z}
 	}
-	_ = right
 	c.From = c.At.AddScaled(d, turn(back).Unit())
 	c.Up = turn(up).Unit()
 	return c

@@ -48,9 +48,16 @@ func coverage(d, alpha float64) uint32 {
 
 // rect fills a rectangle with soft edges.
 func (c *canvas) rect(x0, y0, x1, y1 float64, color rgb, alpha float64) {
-	cx, cy := (x0+x1)/2, (y0+y1)/2
-	hx, hy := (x1-x0)/2, (y1-y0)/2
-	c.shape(cx, cy, max(hx, hy)+1, color, alpha, func(dx, dy float64) float64 {
-		return max(math.Abs(dx)-hx, math.Abs(dy)-hy)
-	})
+	share := func(i int, lo, hi float64) float64 { return min(max(min(float64(i+1), hi)-max(float64(i), lo), 0), 1) }
+	left, right := max(int(math.Floor(x0)), 0), min(int(math.Ceil(x1)), c.w)
+	for j := max(int(math.Floor(y0)), 0); j < min(int(math.Ceil(y1)), c.h); j++ {
+		row := share(j, y0, y1) * alpha * 255
+		for i := left; i < right; i++ {
+			k := row
+			if float64(i) < x0 || float64(i+1) > x1 {
+				k *= share(i, x0, x1)
+			}
+			c.blend(j*c.w+i, color, uint32(k+0.5))
+		}
+	}
 }

@@ -109,22 +109,68 @@ func (p *plate) band(t *tracer, s smear, channels, from, to int) {
 		for y := from + start; y < to; y += stride {
 			for x := range p.w {
 				i := y*p.w + x
-				if t.count[i-lo] == 0 && p.fade[i] != 0 {
+				if t.count[i-lo] == 0 && p.fade[i] != 0 && p.crossed(t, i, lo, hi) < 2 {
 					p.streamline(t, s, channels, i, lo, hi)
 				}
 			}
 		}
 	}
-	for i := range n {
-		for c := range channels {
-			v := float32(0)
-			if t.count[i] > 0 {
-				v = t.acc[c][i] / float32(t.count[i])
+	for c := range channels {
+		for i, n := range t.count {
+			if n > 1 {
+				t.acc[c][i] /= float32(n)
 			}
-			v *= float32(p.fade[lo+i]) * (1.0 / 255)
-			p.tex[c][lo+i] = textureByte(v)
+		}
+		for i, n := range t.count {
+			fade := p.fade[lo+i]
+			if fade == 0 {
+				p.tex[c][lo+i] = 128
+				continue
+			}
+			v := t.acc[c][i]
+			if n == 0 {
+				v = p.between(t, t.acc[c], lo+i, lo, hi)
+			}
+			p.tex[c][lo+i] = textureByte(v * float32(fade) * (1.0 / 255))
 		}
 	}
+}
+
+// crossed returns how many of the four neighbours of pixel i a streamline has crossed. A pixel between two of them needs
+// no streamline of its own: it takes their mean.
+func (p *plate) crossed(t *tracer, i, lo, hi int) int {
+	n := 0
+	x := i % p.w
+	if x > 0 && t.count[i-1-lo] != 0 {
+		n++
+	}
+	if x+1 < p.w && t.count[i+1-lo] != 0 {
+		n++
+	}
+	if i-p.w >= lo && t.count[i-p.w-lo] != 0 {
+		n++
+	}
+	if i+p.w < hi && t.count[i+p.w-lo] != 0 {
+		n++
+	}
+	return n
+}
+
+// between returns the mean of the neighbours of pixel i that a streamline has crossed.
+func (p *plate) between(t *tracer, acc []float32, i, lo, hi int) float32 {
+	var sum, n float32
+	x := i % p.w
+	for k, j := range [4]int{i - 1, i + 1, i - p.w, i + p.w} {
+		if k == 0 && x == 0 || k == 1 && x+1 == p.w || j < lo || j >= hi || t.count[j-lo] == 0 {
+			continue
+		}
+		sum += acc[j-lo]
+		n++
+	}
+	if n == 0 {
+		return 0
+	}
+	return sum / n
 }
 
 // textureSpread is the number of standard deviations of the texture that a byte holds on each side of its middle.

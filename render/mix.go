@@ -1,6 +1,7 @@
 package render
 
 import (
+	"encoding/binary"
 	"math"
 
 	"shearprint/field/r3"
@@ -92,11 +93,12 @@ func newMixer(l *Layers, phase float64) mixer {
 func (m *mixer) row(into []byte, i, n int) {
 	l := m.l
 	into = into[:4*n]
+	back := l.Back
 	texture, scalar, shade, mask := l.Texture[i:i+n], l.Scalar[i:i+n], l.Shade[i:i+n], l.Mask[i:i+n]
 	for k := range n {
 		o := into[4*k : 4*k+4 : 4*k+4]
 		if mask[k] == 0 {
-			copy(o, l.Back[:])
+			o[0], o[1], o[2], o[3] = back[0], back[1], back[2], back[3]
 			continue
 		}
 		a := int32(texture[k])
@@ -123,20 +125,21 @@ func (l *Layers) Mix(pix []byte, w, h int, phase float64) {
 func (l *Layers) mixRows(pix []byte, w, h int, phase float64, from, to int) {
 	m := newMixer(l, phase)
 	row := make([]byte, 4*l.W)
+	wide := make([]byte, 4*w)
 	last := -1
 	for y := from; y < to; y++ {
 		into := pix[4*y*w : 4*(y+1)*w]
 		source := min(y/l.Factor, l.H-1)
-		switch {
-		case l.Factor == 1:
+		if l.Factor == 1 {
 			m.row(into, source*l.W, w)
-		case source == last && y > from: // the row above, without its overlay
-			widen(into, row, l.Factor)
-		default:
-			m.row(row, source*l.W, l.W)
-			widen(into, row, l.Factor)
+		} else {
+			if source != last {
+				m.row(row, source*l.W, l.W)
+				widen(wide, row, l.Factor)
+				last = source
+			}
+			copy(into, wide)
 		}
-		last = source
 		over(into, l.Overlay[4*y*w:4*(y+1)*w])
 	}
 }
@@ -161,6 +164,13 @@ func widen(into, from []byte, factor int) {
 func over(into, above []byte) {
 	above = above[:len(into)]
 	for i := 0; i+4 <= len(above); i += 4 {
+		// Most of an overlay is empty: four pixels at a look.
+		for i+16 <= len(above) && binary.NativeEndian.Uint64(above[i:])|binary.NativeEndian.Uint64(above[i+8:]) == 0 {
+			i += 16
+		}
+		if i+4 > len(above) {
+			return
+		}
 		s := above[i : i+4 : i+4]
 		if s[3] == 0 {
 			continue

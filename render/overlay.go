@@ -155,7 +155,7 @@ func creasesOf(b *body) []int32 {
 		switch {
 		case g < 0:
 			out = append(out, int32(h))
-		case g > int32(h) && (!b.smooth[f.Tail(int32(h))] || !b.smooth[f.Tip(int32(h))]):
+		case g > int32(h) && b.normal[f.Tail(int32(h))][3]+b.normal[f.Tip(int32(h))][3] != 0:
 			if normal(int32(h/3)).Dot(normal(g/3)) < sharp {
 				out = append(out, int32(h))
 			}

@@ -25,8 +25,7 @@ func (r *Renderer) Picture(ctx context.Context, s *Scene, cam Camera, w, h, samp
 	}
 	above = append([]byte(nil), above...)
 	out := image.NewRGBA(image.Rect(0, 0, w, h))
-	rows := max(stripPixels/(w*k)/bandRows*bandRows, bandRows) // of samples; a multiple of the bands
-	rows -= rows % k
+	rows := max(stripPixels/(w*k)/bandRows*bandRows, bandRows) // of samples: a multiple of the bands, and of all k
 	f := &r.frame
 	sampled := make([]byte, 4*w*k*k)
 	for top := 0; top < h*k; top += rows {

@@ -93,7 +93,11 @@ func (p *plate) raster(ctx context.Context, b *body, l *level, lens Lens) error 
 	p.spots = fitted(p.spots, len(b.pos))
 	zero := zeroOf(&lens)
 	const vertices = 1 << 14 // that one goroutine takes at a time
-	err := bands(ctx, 0, len(b.pos), vertices, func(from, to int) { project(b, &lens, zero, p.spots, from, to) })
+	n := len(b.pos)
+	if l.used != nil {
+		n = len(l.used)
+	}
+	err := bands(ctx, 0, n, vertices, func(from, to int) { project(b, l.used, &lens, zero, p.spots, from, to) })
 	if err != nil {
 		return err
 	}

@@ -52,10 +52,14 @@ type raster struct {
 	tried, written int
 }
 
-// project fills spots with the places of the vertices on the frame.
-func project(b *body, l *Lens, zero float64, spots []spot, from, to int) {
+// project fills spots with the places on the frame of the vertices used[from:to], or from..to where used is nil.
+func project(b *body, used []int32, l *Lens, zero float64, spots []spot, from, to int) {
 	nearest := nearShare * l.distance
 	for i := from; i < to; i++ {
+		i := i
+		if used != nil {
+			i = int(used[i])
+		}
 		d := b.pos[i].Sub(l.eye)
 		x, y, z := d.Dot(l.right), d.Dot(l.up), d.Dot(l.forward)
 		s, near := l.focal, zero-z
