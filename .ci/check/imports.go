@@ -21,7 +21,7 @@ var allowed = map[string][]string{
 	"field/topology":    {"field", "field/r3", "field/trace"},
 	"field/study":       {"field", "field/r3", "field/trace", "field/topology"},
 	"render":            {"field", "field/r3", "field/trace", "field/topology"},
-	"wasm/session":      {"field", "field/r3", "field/trace", "field/topology", "render"},
+	"wasm/session":      {"field", "field/r3", "field/trace", "field/topology", "field/study", "render"},
 	"wasm/view":         {"wasm/session"},
 	"wasm/worker": {
 		"field", "field/r3", "field/trace", "field/topology", "field/study", "field/format", "field/exact", "render",

@@ -108,12 +108,13 @@ not balance.`,
 		}
 		return unknownCommand(cmd, args[0])
 	}
-	root.RunE = func(cmd *cobra.Command, _ []string) error { return cmd.Help() }
+	open := a.open()
+	root.RunE = open.RunE
 	root.SetFlagErrorFunc(func(cmd *cobra.Command, err error) error {
 		return usagef("%v; see %s --help", err, cmd.CommandPath())
 	})
 	root.SetHelpCommand(help(root))
-	root.AddCommand(a.inspect(), a.topology(), a.probe(), a.trace(), a.loop(), a.ledger(), a.convert())
+	root.AddCommand(open, a.inspect(), a.topology(), a.probe(), a.trace(), a.loop(), a.ledger(), a.picture(), a.convert())
 	return root
 }
 

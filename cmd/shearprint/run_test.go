@@ -82,6 +82,8 @@ func TestExitStatus(t *testing.T) {
 		{"trace|" + saddle + "|--at|0.2,0.1,0", done},
 		{"convert|" + saddle + "|-o|" + out + ".glb", done},
 		{"convert|" + saddle + "|-o|" + out + ".ply|--quiet", done},
+		{"picture|" + saddle + "|-o|" + out + ".png|--size|64x48", done},
+		{"picture|" + saddle + "|-o|" + out + "2.png|--size|64x48|--look|1,1,3:0,0,0|--hide|lines,legend|--theme|print", done},
 		{"--help", done},
 		{"topology|--help", done},
 		{"help|trace", done},
@@ -115,13 +117,30 @@ func TestExitStatus(t *testing.T) {
 		{"convert|" + saddle + "|-o|" + out + ".glb", badUsage}, // it exists by now
 		{"convert|" + saddle + "|-o|" + out + ".glb|--force", done},
 		{"convert|" + saddle + "|-o|" + filepath.Join(out, "no", "folder.glb"), badUsage},
+		{"picture|" + saddle, badUsage},
+		{"picture|" + saddle + "|-o|" + out + ".jpg", badUsage},
+		{"picture|" + saddle + "|-o|" + out + "3.png|--view|behind", badUsage},
+		{"picture|" + saddle + "|-o|" + out + "3.png|--size|0x9", badUsage},
+		{"picture|" + saddle + "|-o|" + out + "3.png|--size|99999x99999", badUsage},
+		{"picture|" + saddle + "|-o|" + out + "3.png|--look|1,2,3", badUsage},
+		{"picture|" + saddle + "|-o|" + out + "3.png|--colour|mauve", badUsage},
+		{"picture|" + saddle + "|-o|" + out + "3.png|--hide|everything", badUsage},
+		{"picture|" + saddle + "|-o|" + out + "3.png|--min-robustness|x", badUsage},
+		{"open|" + filepath.Join(t.TempDir(), "missing.ply"), badInput},
+		{"open|--port|99999", badUsage},
+		{"ledger|--nodes|2|--body|isolated", done},
+		{"ledger|--nodes|2|--saddles|1|--body|isolated", unbalanced},
+		{"ledger|--nodes|-2|--body|isolated", badUsage},
+		{"ledger|--nodes|2", badUsage},
+		{"ledger|--nodes|2|--body|cube", badUsage},
+		{"help|nonsense", badUsage},
 		{"share|" + saddle, badUsage},
 	} {
 		status, stdout, stderr := shearprint(strings.Split(c.args, "|")...)
 		if status != c.want {
 			t.Errorf("%s: exit status %d, want %d; it says %s", c.args, status, c.want, stderr)
 		}
-		if status != done && (stdout != "" || !oneMessage(stderr)) {
+		if (status == badInput || status == badUsage) && (stdout != "" || !oneMessage(stderr)) {
 			t.Errorf("%s: on standard output %q, on standard error %q; want one line of error", c.args, stdout, stderr)
 		}
 	}
