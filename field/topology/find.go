@@ -14,6 +14,9 @@ import (
 // pointBlock is the number of points that one goroutine places at a time.
 const pointBlock = 64
 
+// pointsShare is the share of the time that the points take where lines are asked for too.
+const pointsShare = 0.3
+
 // Find returns the critical points of f with their ledger, and the lines if asked for. The only error is that of ctx:
 // any field on any mesh has an answer.
 func Find(ctx context.Context, f *field.Field, opt Options) (*Skeleton, error) {
@@ -25,14 +28,14 @@ func Find(ctx context.Context, f *field.Field, opt Options) (*Skeleton, error) {
 	if err != nil {
 		return nil, err
 	}
-	progress(0.1)
+	progress(pointsShare / 3)
 	if err := c.joinKnots(ctx); err != nil {
 		return nil, err
 	}
 	if err := c.findRobustness(ctx); err != nil {
 		return nil, err
 	}
-	progress(0.3)
+	progress(pointsShare)
 	s := &Skeleton{Field: f, Floor: opt.MinRobustness, count: c}
 	c.set = sets{} // as large as the mesh, and done with
 	if opt.Relative {
@@ -57,6 +60,12 @@ func Find(ctx context.Context, f *field.Field, opt Options) (*Skeleton, error) {
 	}
 	s.makeLedger(c)
 	s.tellFindings()
+	if opt.Lines {
+		err := s.addLines(ctx, func(share float64) { progress(pointsShare + float64((1-pointsShare)*share)) })
+		if err != nil {
+			return nil, err
+		}
+	}
 	progress(1)
 	return s, nil
 }

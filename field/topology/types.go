@@ -30,8 +30,10 @@ type Skeleton struct {
 	Floor float64
 	// Cancelled is the number of points below Floor.
 	Cancelled int
-	// Basins holds, per triangle, the number of its basin; nil without lines.
+	// Basins holds, per triangle, the number of its basin in Regions, or -1; nil without lines.
 	Basins []int32
+	// Regions describes the basins.
+	Regions []Basin
 	// Findings tells what is doubtful about points and lines.
 	Findings []field.Finding
 

@@ -1,0 +1,5 @@
+package topology
+
+import "context"
+
+func (b *builder) addOpenLines(ctx context.Context) error { return nil }
