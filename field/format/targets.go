@@ -88,8 +88,12 @@ func typicalDistance(rows []r3.Vec, t *targets) float64 {
 	return medianOf(d)
 }
 
+// relative returns a distance from target k over its size; infinity if there is no target (k < 0).
 func (t *targets) relative(k int32, dist float64) float64 {
-	if dist == 0 {
+	switch {
+	case k < 0:
+		return math.Inf(1)
+	case dist == 0:
 		return 0
 	}
 	return dist / t.size[k]
