@@ -32,7 +32,7 @@ var (
 	colours = map[string]render.Quantity{
 		"auto": render.Auto, "cp": render.Cp, "p": render.Pressure, "tau": render.TauSize, "none": render.Plain,
 	}
-	patterns = map[string]render.Flow{"texture": render.Texture, "none": render.NoFlow}
+	patterns = map[string]render.Flow{"texture": render.Texture, "lines": render.FlowLines, "none": render.NoFlow}
 	themes   = map[string]render.Theme{"light": render.Light, "dark": render.Dark, "print": render.Print}
 	layers   = []string{"points", "lines", "legend"}
 )
@@ -82,7 +82,7 @@ the flow separates, hollow where it attaches. Lines: unbroken where the flow sep
 	f.StringVar(&p.look, "look", "", "view of one's own, `FROM:AT` as x,y,z:x,y,z")
 	f.StringVar(&p.size, "size", "1600x1000", "`WxH` in pixels")
 	f.StringVar(&p.colour, "colour", "auto", "cp, p, tau or none; auto takes the first that the run has")
-	f.StringVar(&p.pattern, "pattern", "texture", "how the direction of tau is shown: texture or none")
+	f.StringVar(&p.pattern, "pattern", "texture", "how the direction of tau is shown: texture, lines or none")
 	f.StringVar(&p.theme, "theme", "light", "light, dark or print")
 	f.StringVar(&p.hide, "hide", "", "`LAYERS` to leave out, with commas: "+strings.Join(layers, ", "))
 	f.StringVar(&p.floor, "min-robustness", "0", "leave out points weaker than `R`, in the unit of tau, or R% of the largest")
@@ -105,7 +105,7 @@ func (p *pictureFlags) check() (w, h int, err error) {
 		return 0, 0, usagef("--colour %s: give auto, cp, p, tau or none", p.colour)
 	}
 	if _, ok := patterns[p.pattern]; !ok {
-		return 0, 0, usagef("--pattern %s: give texture or none", p.pattern)
+		return 0, 0, usagef("--pattern %s: give texture, lines or none", p.pattern)
 	}
 	if _, ok := themes[p.theme]; !ok {
 		return 0, 0, usagef("--theme %s: give light, dark or print", p.theme)
@@ -141,6 +141,10 @@ func parseSize(s string) (w, h int, err error) {
 	return w, h, nil
 }
 
+// streamlineGap is the distance between streamlines, as a share of the run's size: close enough to show a focus an eighth
+// of the body wide, and far enough to see the colours between.
+const streamlineGap = 1. / 60
+
 // draw makes the picture. The skeleton is computed only if it is shown.
 func (p *pictureFlags) draw(ctx context.Context, a *app, f *field.Field, w, h int, quiet bool) (*image.RGBA, error) {
 	hidden := p.hidden()
@@ -163,6 +167,12 @@ func (p *pictureFlags) draw(ctx context.Context, a *app, f *field.Field, w, h in
 	scene := render.SceneOf(f, sk)
 	scene.Quantity, scene.Flow, scene.Theme = colours[p.colour], patterns[p.pattern], themes[p.theme]
 	scene.Transparent, scene.Bare = p.transparent, slices.Contains(hidden, "legend")
+	if scene.Flow == render.FlowLines {
+		var err error
+		if scene.Streamlines, err = render.Streamlines(ctx, f, float64(streamlineGap*f.Diagonal())); err != nil {
+			return nil, err
+		}
+	}
 	if !points {
 		scene.Marks = nil
 	}
