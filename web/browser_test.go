@@ -142,7 +142,6 @@ func (b *tab) until(expression string) {
 
 const (
 	ready = `document.documentElement.dataset.state === "ready"`
-	still = `document.documentElement.dataset.picture === "still"`
 )
 
 // shot saves a picture of the tab in the folder that SHEARPRINT_SHOTS names, for people to look at.
@@ -180,4 +179,10 @@ func (b *tab) drop(name string, data []byte) {
 // alert returns the text of the alert.
 func (b *tab) alert() string {
 	return strings.TrimSpace(eval[string](b, `document.querySelector("[role=alert]").textContent`))
+}
+
+// settle waits until the finished picture is shown.
+func (b *tab) settle() {
+	b.Helper()
+	eval[any](b, "shearprint.settled()")
 }

@@ -45,13 +45,18 @@ type Size struct {
 	Width  float64 `json:"width"` // [CSS pixels]
 	Height float64 `json:"height"`
 	Ratio  float64 `json:"ratio"` // screen pixels per CSS pixel
+	// Left, Top, Right and Bottom are what the instruments cover [CSS pixels].
+	Left   float64 `json:"left"`
+	Top    float64 `json:"top"`
+	Right  float64 `json:"right"`
+	Bottom float64 `json:"bottom"`
 	// Layers asks for what a picture is mixed from instead of the picture (see Pack).
 	Layers bool `json:"layers"`
 }
 
 // Check implements the check of Read.
 func (s Size) Check() error {
-	if !finite(s.Width, s.Height, s.Ratio) || !(s.Ratio >= 0.25 && s.Ratio <= 8) ||
+	if !finite(s.Width, s.Height, s.Ratio, s.Left, s.Top, s.Right, s.Bottom) || !(s.Ratio >= 0.25 && s.Ratio <= 8) ||
 		s.Width*s.Ratio > largestSide || s.Height*s.Ratio > largestSide {
 		return fmt.Errorf("a stage of %g x %g at %g cannot be", s.Width, s.Height, s.Ratio)
 	}

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 
+	"shearprint/field"
 	"shearprint/field/r3"
 	"shearprint/render"
 )
@@ -91,4 +92,34 @@ func Toward(c render.Camera, at, normal r3.Vec, diagonal float64) render.Camera 
 		out.Up = r3.Vec{Z: 1}
 	}
 	return out
+}
+
+// leastFree is the share of the stage, each way, that counts as free whatever the instruments cover.
+const leastFree = 0.3
+
+// free returns the middle of what the instruments leave free, from the middle of the stage, and its size [CSS pixels].
+func (s Size) free() (x, y, w, h float64) {
+	left, right, top, bottom := max(s.Left, 0), max(s.Right, 0), max(s.Top, 0), max(s.Bottom, 0)
+	w, h = s.Width-left-right, s.Height-top-bottom
+	x, y = (left-right)/2, (top-bottom)/2
+	if w < leastFree*s.Width {
+		x, w = 0, s.Width
+	}
+	if h < leastFree*s.Height {
+		y, h = 0, s.Height
+	}
+	return x, y, max(w, 1), max(h, 1)
+}
+
+// Fit returns the camera, with its direction kept, from where the whole run fits into the free part of the stage.
+func (s Size) Fit(c render.Camera, f *field.Field) render.Camera {
+	_, _, w, h := s.free()
+	c = c.Fit(f, w/h)
+	return s.Centre(c.Zoom(h/max(s.Height, 1), c.At))
+}
+
+// Centre returns the camera moved so that what is in the middle of the stage comes to the middle of its free part.
+func (s Size) Centre(c render.Camera) render.Camera {
+	x, y, _, _ := s.free()
+	return c.Pan(x/max(s.Height, 1), y/max(s.Height, 1))
 }

@@ -5,6 +5,10 @@ import (
 	"encoding/json"
 	"fmt"
 	"math"
+
+	"shearprint/field"
+	"shearprint/field/r3"
+	"shearprint/render"
 )
 
 // Version is the protocol's version: page and worker of different versions refuse each other, which happens where a
@@ -108,6 +112,46 @@ type FrameInfo struct {
 	Animated     bool    `json:"animated"`     // its texture moves
 	Milliseconds float64 `json:"milliseconds"` // that making it took
 	Number       int64   `json:"number"`       // rising
+	Key          Key     `json:"key"`
+}
+
+// Key is what a reader needs to read a frame: the colours, the scale and the directions.
+type Key struct {
+	Colour string        `json:"colour"` // the view's word for the quantity
+	Unit   string        `json:"unit"`   // of Low and High; "" for none
+	Low    float64       `json:"low"`    // the values at the ends of the colours
+	High   float64       `json:"high"`
+	Table  []byte        `json:"table"`  // RGB from Low to High, the first entry for "no value"
+	Length string        `json:"length"` // unit of lengths; "" where nobody told
+	Pixel  float64       `json:"pixel"`  // length that a CSS pixel shows in the plane through the camera's target
+	Axes   [3][2]float64 `json:"axes"`   // x, y and z on the frame, x right and y down; unit length where seen square on
+}
+
+// KeyOf returns the key of a frame of the view on a stage.
+func KeyOf(v View, s Size, f *field.Field, l *render.Layers) Key {
+	c := v.Camera()
+	k := Key{Colour: v.Colour, Low: l.Low, High: l.High, Length: f.Units.Length, Pixel: c.Height() / max(s.Height, 1)}
+	switch v.Colour {
+	case "p":
+		k.Unit = f.Units.P
+	case "tau":
+		k.Unit = f.Units.Tau
+	}
+	if k.Unit == "1" {
+		k.Unit = ""
+	}
+	for _, x := range l.Table {
+		k.Table = append(k.Table, x[:]...)
+	}
+	// Directions do not depend on the distance: a parallel camera shows them.
+	c.Ortho = true
+	lens := c.Lens(1, 1)
+	x0, y0, _ := lens.Project(c.At)
+	for i, d := range [3]r3.Vec{{X: 1}, {Y: 1}, {Z: 1}} {
+		x, y, _ := lens.Project(c.At.AddScaled(c.Height(), d))
+		k.Axes[i] = [2]float64{x - x0, y - y0}
+	}
+	return k
 }
 
 func finite(xs ...float64) bool {

@@ -56,6 +56,20 @@ func Default(run string) View {
 	}
 }
 
+// Suit returns the view for a run: a quantity that the run lacks gives way to one that it has.
+func (v View) Suit(hasP, hasCp bool) View {
+	if v.Colour == "cp" && !hasCp {
+		v.Colour = "p"
+	}
+	if v.Colour == "p" && !hasP {
+		v.Colour = "tau"
+		if hasCp {
+			v.Colour = "cp"
+		}
+	}
+	return v
+}
+
 // Camera returns the view's camera. HasCamera tells whether there is one.
 func (v View) Camera() render.Camera {
 	return render.Camera{From: vec(v.Eye), At: vec(v.Target), Up: vec(v.Up), Fov: v.Angle, Ortho: v.Parallel}

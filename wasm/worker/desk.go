@@ -230,7 +230,12 @@ func (d *desk) findPoints(ctx context.Context, r session.Request, _ js.Value) (a
 	}
 	out.Text = string(text)
 	if d.run == run {
-		d.painter.enter("skeleton", func() { d.painter.take(sk) })
+		taken := make(chan struct{})
+		d.painter.enter("skeleton", func() {
+			d.painter.take(sk)
+			close(taken)
+		})
+		<-taken
 	}
 	return out, nil
 }

@@ -43,7 +43,8 @@ type painter struct {
 	block   []byte
 	number  int64
 	anchor  anchor
-	linked  string // the link that the page knows
+	waiters []session.Request // that want to know when nothing is left to be done
+	linked  string            // the link that the page knows
 }
 
 // flight is a movement of the camera that nobody's hand makes.
@@ -67,7 +68,7 @@ func newPainter(post func(session.Reply, []byte, js.Value)) *painter {
 }
 
 // harmless are the tasks that leave a still frame as it is.
-var harmless = map[string]bool{"shown": true, "view": true}
+var harmless = map[string]bool{"shown": true, "view": true, "settled": true}
 
 // enter appends a task.
 func (p *painter) enter(name string, task func()) {
@@ -113,8 +114,9 @@ func (p *painter) begin(f *field.Field, o session.Open) (session.View, string) {
 		view, warning = fresh, err.Error()
 	}
 	view.Run = o.Run
+	view = view.Suit(f.P != nil, f.Cp != nil)
 	if !view.HasCamera() {
-		view = view.With(render.NamedView("iso", f).Fit(f, p.aspect()))
+		view = view.With(p.size.Fit(render.NamedView("iso", f), f))
 	}
 	p.view, p.flight, p.anchor = view, nil, anchor{}
 	p.loupe = render.NewRenderer() // forget the old run
@@ -123,21 +125,6 @@ func (p *painter) begin(f *field.Field, o session.Open) (session.View, string) {
 	p.hand = time.Time{}
 	p.tellLink()
 	return p.view, warning
-}
-
-// panels is the share of the stage's width that the instruments leave free on a wide screen.
-const panels = 0.62
-
-// aspect is width over height of the part of the stage in which a run is fitted.
-func (p *painter) aspect() float64 {
-	if p.size.Height <= 0 {
-		return 1
-	}
-	a := p.size.Width / p.size.Height
-	if p.size.Width > 760 { // the page's own limit between wide and narrow
-		a *= panels
-	}
-	return a
 }
 
 // take shows a skeleton.
@@ -199,6 +186,10 @@ func (p *painter) paint() bool {
 	case p.scene.Animate && !p.size.Layers: // the page's view moves layers by itself
 		return p.flowOn(w, h)
 	}
+	for _, r := range p.waiters {
+		p.post(session.Reply{ID: r.ID}, nil, js.Undefined())
+	}
+	p.waiters = nil
 	return false
 }
 
@@ -235,6 +226,7 @@ func (p *painter) show(f *render.Frame, q render.Quality, start time.Time) {
 	spare := p.spare
 	p.spare = js.Undefined()
 	info := session.FrameInfo{Width: f.W, Height: f.H, Still: q == render.Still, Animated: f.Layers.Animated, Number: p.number,
+		Key:          session.KeyOf(p.view, p.size, p.field, &f.Layers),
 		Milliseconds: milliseconds(time.Since(start))}
 	p.post(session.Reply{Event: "frame", Body: info}, block, spare)
 }

@@ -26,7 +26,7 @@ const isobarCount = 12
 func (p *painter) sceneOf() *render.Scene {
 	v := &p.view
 	s := &render.Scene{
-		Field: p.field, Quantity: quantities[v.Colour], Theme: themes[v.Theme], Scale: p.size.Ratio, Bare: !v.Legend,
+		Field: p.field, Quantity: quantities[v.Colour], Theme: themes[v.Theme], Scale: p.size.Ratio, Bare: true, // the page has a key of its own
 		Animate: v.Motion && v.Flow == "texture",
 	}
 	if v.Isobars {

@@ -25,6 +25,7 @@ var painterTasks = map[string]task{
 	"size": (*painter).resize, "gesture": (*painter).gesture, "shown": (*painter).shown, "set": (*painter).set,
 	"view": (*painter).tellView, "link": (*painter).follow, "look": (*painter).look, "fly": (*painter).fly,
 	"pick": (*painter).pick, "loupe": (*painter).magnify, "picture": (*painter).picture,
+	"settled": (*painter).settled,
 }
 
 func (p *painter) resize(r session.Request, _ js.Value) (any, error) {
@@ -39,6 +40,12 @@ func (p *painter) resize(r session.Request, _ js.Value) (any, error) {
 // shown hears that the page has shown a frame, and takes the frame's memory back.
 func (p *painter) shown(_ session.Request, block js.Value) (any, error) {
 	p.waiting, p.spare = false, block
+	return nil, nil
+}
+
+// settled answers once the finished picture of the present view is shown.
+func (p *painter) settled(r session.Request, _ js.Value) (any, error) {
+	p.waiters = append(p.waiters, r)
 	return nil, nil
 }
 
@@ -83,6 +90,9 @@ func (p *painter) set(r session.Request, _ js.Value) (any, error) {
 	}
 	camera := view.Camera() != p.view.Camera()
 	p.view = view
+	if p.field != nil {
+		p.view = view.Suit(p.field.P != nil, p.field.Cp != nil)
+	}
 	p.moved = p.moved || camera
 	p.compose()
 	return nil, nil
@@ -122,7 +132,7 @@ func (p *painter) follow(r session.Request, _ js.Value) (any, error) {
 	if !view.HasCamera() {
 		view = view.With(p.view.Camera())
 	}
-	p.view, p.flight, p.moved = view, nil, true
+	p.view, p.flight, p.moved = view.Suit(p.field.P != nil, p.field.Cp != nil), nil, true
 	p.compose()
 	return viewBody{p.view, p.view.Encode()}, nil
 }
@@ -131,7 +141,7 @@ func (p *painter) follow(r session.Request, _ js.Value) (any, error) {
 func (p *painter) look(r session.Request, _ js.Value) (any, error) {
 	l, err := session.Read[session.Look](r)
 	if err == nil && p.field != nil {
-		p.flyTo(render.NamedView(l.Name, p.field).Fit(p.field, p.aspect()))
+		p.flyTo(p.size.Fit(render.NamedView(l.Name, p.field), p.field))
 	}
 	return nil, err
 }
@@ -141,7 +151,7 @@ func (p *painter) fly(r session.Request, _ js.Value) (any, error) {
 	s, err := session.Read[session.Spot](r)
 	if err == nil && p.field != nil {
 		at, normal := vec(s.At), vec(s.Normal)
-		p.flyTo(session.Toward(p.view.Camera(), at, normal, p.field.Diagonal()))
+		p.flyTo(p.size.Centre(session.Toward(p.view.Camera(), at, normal, p.field.Diagonal())))
 	}
 	return nil, err
 }
@@ -259,6 +269,7 @@ func (p *painter) picture(r session.Request, _ js.Value) (any, error) {
 		return nil, errNoRun
 	}
 	scene := *p.scene
+	scene.Bare, scene.Scale, scene.Title = !p.view.Legend, 1, p.field.Name
 	f, err := p.renderer.Frame(context.Background(), &scene, p.view.Camera(), size.Width, size.Height, render.Still)
 	if err != nil {
 		return nil, err

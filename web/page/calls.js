@@ -29,6 +29,8 @@ export function installCalls({ engine, timings, follow }) {
     },
   };
   window.shearprint = {
+    // settled promises that the finished picture of the present view is on the screen.
+    async settled() { await engine.ask("settled"); },
     async call(name, args = {}) {
       const { text, ...rest } = args;
       if (Object.hasOwn(own, name)) return own[name](rest);

@@ -26,9 +26,10 @@ export class Card {
     const j = point ?? probe;
     const rows = [
       ["Position", `${probe.position.map((x) => number(x)).join(", ")} ${L}`],
-      ["Wall shear", `${number(probe.tau_magnitude, T)}`],
-      ["Pressure", probe.p === null || probe.p === undefined ? "not in this run" : number(probe.p, P)],
-      ["Pressure coefficient", probe.cp === null || probe.cp === undefined ? "not in this run" : number(probe.cp)],
+      ["Wall shear |tau|", number(probe.tau_magnitude, T)],
+      ["tau", `${probe.tau.map((x) => number(x)).join(", ")} ${T}`],
+      ["Pressure p", probe.p === null || probe.p === undefined ? "not in this run" : number(probe.p, P)],
+      ["Coefficient cp", probe.cp === null || probe.cp === undefined ? "not in this run" : number(probe.cp)],
     ];
     if (j.jacobian) {
       const G = per(T, L);
@@ -42,7 +43,7 @@ export class Card {
     if (point) {
       rows.push(
         ["Type", point.type], ["Sense", point.sense], ["Index", number(point.half ? point.index / 2 : point.index)],
-        ["Robustness", point.robustness === null ? "no disturbance below the largest stress cancels it" : number(point.robustness, T)],
+        ["Robustness", point.robustness === null ? "uncancellable: no disturbance below the largest stress removes it" : number(point.robustness, T)],
         ["Confidence", `${Math.round(100 * point.confidence)}\u202f%`],
       );
     }
@@ -50,12 +51,11 @@ export class Card {
     const text = () => [title, ...rows.map(([k, v]) => `${k}: ${v}`)].join("\n");
     const loupe = new Loupe(title, L);
     this.#el.replaceChildren(
-      make("div", { class: "row" },
+      make("div", { class: "row" }, make("h2", {}, title),
         make("button", { type: "button", onclick: (e) => copy(text(), e.target) }, "Copy"),
         make("button", { type: "button", "aria-label": "Close the card", onclick: () => this.hide(true) }, "Close")),
-      make("h2", {}, title), loupe.element, list,
-      point?.note ? make("p", { class: "note" }, sentence(point.note)) : null,
-      j.jacobian ? chart(j.trace, j.determinant) : null);
+      make("div", { class: "pair" }, loupe.element, j.jacobian ? chart(j.trace, j.determinant) : ""), list,
+      (point ?? probe).note ? make("p", { class: "note" }, sentence((point ?? probe).note)) : "");
     this.#el.hidden = false;
     return loupe;
   }
@@ -92,12 +92,12 @@ class Loupe {
         c.stroke();
       }
     }
-    this.#scale.textContent = `${number(shows, this.#unit)} across${axes.length ? "; the strokes are the eigenvectors" : ""}`;
+    this.#scale.textContent = `${number(shows, this.#unit)} across${axes.length ? "; strokes: eigenvectors" : ""}`;
     this.#canvas.setAttribute("aria-label", `${this.#title}, magnified: ${this.#scale.textContent}`);
   }
 }
 
-const loupeSize = 184; // CSS pixels
+const loupeSize = 148; // CSS pixels
 
 const sentence = (s) => s[0].toUpperCase() + s.slice(1) + ".";
 
@@ -119,27 +119,28 @@ async function copy(text, button) {
 }
 
 // chart draws the plane of trace and determinant, each scaled so that the point's distance from the middle tells only
-// direction: what matters is on which side of the axis and the parabola it lies.
+// direction: what matters is on which side of the axes and the parabola it lies.
 function chart(trace, det) {
-  const W = 280, H = 130, x0 = W / 2, y0 = 92;
+  const W = 150, H = 150, x0 = W / 2, y0 = 98;
   const scale = Math.max(Math.abs(trace), 2 * Math.sqrt(Math.abs(det)), 1e-300);
   const t = trace / scale, d = det / (scale * scale);
-  const px = (u) => x0 + u * 110, py = (v) => y0 - v * 170;
+  const px = (u) => x0 + u * 60, py = (v) => y0 - v * 230;
   let curve = "";
-  for (let u = -1.25; u <= 1.2501; u += 0.05) curve += `${curve ? "L" : "M"}${px(u).toFixed(1)} ${py(u * u / 4).toFixed(1)}`;
+  for (let u = -1.2; u <= 1.2001; u += 0.05) curve += `${curve ? "L" : "M"}${px(u).toFixed(1)} ${py(u * u / 4).toFixed(1)}`;
   const label = (x, y, s, anchor = "middle") => {
-    const e = draw("text", { x, y, "text-anchor": anchor, "font-size": 10, fill: "currentColor", opacity: 0.75 });
+    const e = draw("text", { x, y, "text-anchor": anchor, "font-size": 9.5, fill: "currentColor" });
     e.textContent = s;
     return e;
   };
-  const svg = draw("svg", { viewBox: `0 0 ${W} ${H}`, class: "chart", role: "img",
+  const svg = draw("svg", { viewBox: `0 0 ${W} ${H}`, width: W, height: H, role: "img",
     "aria-label": "Plane of trace and determinant with the parabola between nodes and foci; a dot marks this place" },
-  draw("line", { x1: 8, x2: W - 8, y1: y0, y2: y0, stroke: "currentColor", opacity: 0.5 }),
-  draw("line", { x1: x0, x2: x0, y1: 8, y2: H - 8, stroke: "currentColor", opacity: 0.3 }),
+  draw("rect", { x: 0.5, y: 0.5, width: W - 1, height: H - 1, fill: "var(--field)", stroke: "var(--rule)" }),
+  draw("line", { x1: 4, x2: W - 4, y1: y0, y2: y0, stroke: "currentColor", opacity: 0.5 }),
+  draw("line", { x1: x0, x2: x0, y1: 16, y2: H - 26, stroke: "currentColor", opacity: 0.3 }),
   draw("path", { d: curve, fill: "none", stroke: "currentColor", "stroke-dasharray": "4 3" }),
-  label(x0 - 34, 18, "foci", "end"), label(x0 + 34, 18, "foci", "start"),
-  label(14, y0 - 6, "nodes", "start"), label(W - 14, y0 - 6, "nodes", "end"),
-  label(x0, H - 6, "saddles"), label(14, H - 6, "separation", "start"), label(W - 14, H - 6, "attachment", "end"),
-  draw("circle", { cx: px(t), cy: Math.min(H - 8, py(d)), r: 5, fill: "var(--mark)", stroke: "var(--ink)" }));
-  return svg;
+  label(x0, 12, "determinant"), label(x0 - 5, 34, "foci", "end"), label(x0 + 5, 34, "foci", "start"),
+  label(4, y0 - 6, "nodes", "start"), label(W - 4, y0 - 6, "nodes", "end"), label(x0, y0 + 22, "saddles"),
+  label(4, H - 16, "\u2190 separation", "start"), label(W - 4, H - 5, "attachment \u2192", "end"), label(W - 4, y0 + 11, "trace", "end"),
+  draw("circle", { cx: px(t), cy: Math.max(20, Math.min(H - 32, py(d))), r: 4.5, fill: "var(--mark)", stroke: "var(--ink)" }));
+  return make("figure", {}, svg, make("figcaption", {}, "Kind of the Jacobian"));
 }

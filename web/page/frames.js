@@ -5,20 +5,18 @@ const remembered = 120; // frames in the medians
 export class Frames {
   #engine; #presenter; #moving = []; #still = [];
 
-  constructor(engine, presenter, timings) {
+  constructor(engine, presenter, timings, key) {
     this.#engine = engine;
     this.#presenter = presenter;
     engine.addEventListener("frame", async ({ detail }) => {
-      const root = document.documentElement;
-      if (!detail.still) delete root.dataset.picture;
       const began = performance.now();
       await this.#presenter.show(detail);
       const now = performance.now();
+      key.show(detail.key);
       timings.first_picture ??= now; // counted from the page's address
       const list = detail.still ? this.#still : this.#moving;
       list.push(detail.milliseconds + now - began);
       if (list.length > remembered) list.shift();
-      if (detail.still) root.dataset.picture = "still"; // nothing better will come until something changes
       this.#engine.tell("shown", {}, detail.block);
     });
   }

@@ -92,18 +92,20 @@ export class Ledger {
   // show fills the book.
   show(topology) {
     const l = topology.ledger;
-    this.#rule.textContent = l.rule;
+    this.#rule.textContent = `Why: ${l.rule}.`;
     const head = make("thead", {}, make("tr", {},
       ...["Point", "Robustness", "Sure"].map((t) => make("th", { scope: "col" }, t)),
       make("th", { scope: "col", class: "amount" }, "+1"), make("th", { scope: "col", class: "amount" }, "\u22121")));
     const body = make("tbody", {}, ...topology.points.map((p) => this.#row(p)));
     const plus = sum(topology.points, 1), minus = sum(topology.points, -1);
-    const foot = make("tfoot", {}, make("tr", {}, make("td", { colspan: 3 }, "Sum"),
-      make("td", { class: "amount plus" }, number(plus)), make("td", { class: "amount minus" }, number(minus))));
-    this.#book.replaceChildren(make("table", {}, head, body, foot));
+    const foot = make("tfoot", {}, make("tr", {}, make("th", { scope: "row", colspan: 3 }, "Sum of each column"),
+      make("td", { class: "amount plus" }, number(plus)), make("td", { class: "amount minus" }, number(minus))),
+    make("tr", {}, make("th", { scope: "row", colspan: 3 }, "The points add up to"), make("td", { class: "amount", colspan: 2 }, number(plus + minus))),
+    make("tr", {}, make("th", { scope: "row", colspan: 3 }, "The surface demands"), make("td", { class: "amount", colspan: 2 }, number(l.expected))));
+    this.#book.replaceChildren(make("div", { class: "rows" }, make("table", {}, head, body)), make("table", { class: "foot" }, foot));
     const text = l.balanced
-      ? `The book balances: the points add up to ${number(l.index_sum)}, as the surface demands.`
-      : `The book does not balance: the points add up to ${number(l.index_sum)}, the surface demands ${number(l.expected)}.`;
+      ? "The book balances: no point is missing and none is too many."
+      : "The book does not balance: a point is missing, or one is too many.";
     this.#verdict.textContent = text;
     this.#verdict.classList.toggle("off", !l.balanced);
     this.#showFloor(this.floor);
@@ -115,14 +117,14 @@ export class Ledger {
     const amount = p.half ? p.index / 2 : p.index;
     const bar = make("span", { class: "bar" }, make("i"));
     bar.firstChild.style.width = `${100 * Math.min(1, share)}%`;
-    const robust = p.robustness === null ? "cannot be cancelled" : number(p.robustness, this.#unit);
+    const robust = p.robustness === null ? "uncancellable" : number(p.robustness, this.#unit);
     return make("tr", {
       tabindex: 0, "data-id": p.id, class: p.resolved === false ? "doubt" : "", title: p.note ?? "",
       "aria-label": `${p.id}, ${p.type} of ${p.sense}, robustness ${robust}`,
       onclick: () => this.#do.choose(p),
       onkeydown: (e) => { if (e.key === "Enter" || e.key === " ") { e.preventDefault(); this.#do.choose(p); } },
     },
-    make("td", {}, make("b", { class: "id" }, p.id), ` ${p.type}`, make("br"), make("small", {}, p.sense)),
+    make("td", {}, make("b", { class: "id" }, p.id), ` ${p.half ? "half " : ""}${p.type}`, make("small", {}, p.sense)),
     make("td", {}, bar, make("small", {}, robust)),
     make("td", {}, `${Math.round(100 * p.confidence)}\u202f%`),
     make("td", { class: "amount plus" }, amount > 0 ? number(amount) : ""),

@@ -6,6 +6,7 @@ import { Ledger } from "./ledger.js";
 import { Card } from "./card.js";
 import { Sheets } from "./sheets.js";
 import { Work } from "./work.js";
+import { Key } from "./key.js";
 import { Frames } from "./frames.js";
 import { installCalls } from "./calls.js";
 import { choosePresenter } from "./present.js";
@@ -86,6 +87,7 @@ const card = new Card(() => { ledger.choose(null); engine.tell("set", { at: null
 const sheets = new Sheets({
   look: (name) => engine.tell("look", { name }),
   set: (change) => engine.tell("set", change),
+  resized: () => frames && tellSize(),
   health: async () => JSON.parse((await engine.ask("call", { name: "inspect", args: {} })).text),
 });
 
@@ -117,7 +119,13 @@ new Stage(el("stage"), {
 
 function tellSize() {
   const ratio = Math.min(Math.max(devicePixelRatio || 1, 0.25), 2);
-  engine.tell("size", { width: innerWidth, height: innerHeight, ratio, layers: frames.layers });
+  const wide = innerWidth > 760; // as in the style sheet: instruments beside the stage, not at its foot
+  const covered = el("ledger").hidden ? null : el("ledger").getBoundingClientRect();
+  engine.tell("size", {
+    width: innerWidth, height: innerHeight, ratio, layers: frames.layers,
+    left: wide && covered ? covered.right : 0, top: el("head").getBoundingClientRect().bottom, right: 0,
+    bottom: covered && !wide ? innerHeight - covered.top : innerHeight - el("key").getBoundingClientRect().top,
+  });
 }
 
 el("open").addEventListener("click", () => el("file").click());
@@ -160,7 +168,7 @@ installCalls({ engine, timings: () => ({ ...timings, ...frames?.timings }), foll
 open(async () => {
   const presenter = await choosePresenter(el("picture"), new URLSearchParams(location.search).get("present"));
   document.documentElement.dataset.present = presenter.name;
-  frames = new Frames(engine, presenter, timings);
+  frames = new Frames(engine, presenter, timings, new Key());
   tellSize();
   addEventListener("resize", tellSize);
   await openFromAddress();

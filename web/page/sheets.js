@@ -13,7 +13,7 @@ const switches = [
   ["motion", "Texture moves with the flow"], ["isobars", "Lines of equal value"], ["points", "Critical points"],
   ["separation", "Separation lines"], ["attachment", "Attachment lines"],
   ["closed", "Lines from saddle to node"], ["horn", "Lines into or out of a focus"], ["open", "Open lines"], ["cycle", "Closed orbits"],
-  ["legend", "Legend and scale"],
+  ["legend", "Key and scale"],
 ];
 
 export class Sheets {
@@ -44,11 +44,13 @@ export class Sheets {
   #set(name, open) {
     document.getElementById(name).hidden = !open;
     document.getElementById(`${name}-button`).setAttribute("aria-expanded", open);
+    if (name === "ledger") this.#do.resized();
   }
 
   // fresh sets the controls for a new run and its view.
   fresh(run, view) {
     document.documentElement.dataset.theme = view.theme;
+    document.getElementById("key").hidden = !view.legend;
     this.#layers.replaceChildren(
       ...layers.map((l) => make("fieldset", {}, make("legend", {}, l.label), ...l.choices
         .filter(([v]) => l.name !== "colour" || v === "none" || v === "tau" || run[`has_${v}`])
@@ -61,6 +63,7 @@ export class Sheets {
 
   #change(name, value) {
     if (name === "theme") document.documentElement.dataset.theme = value;
+    if (name === "legend") document.getElementById("key").hidden = !value;
     this.#do.set({ [name]: value });
   }
 

@@ -1,0 +1,96 @@
+// The key at the foot of the stage: colours with their values, the scale, the directions, and what marks and lines mean.
+
+import { make, draw, number } from "./words.js";
+
+const titles = { cp: "Pressure coefficient cp", p: "Pressure p", tau: "Wall shear stress |tau|" };
+const barWidth = 210, barHeight = 12; // CSS pixels
+
+export class Key {
+  #colours = document.getElementById("key-colours");
+  #scale = document.getElementById("key-scale");
+  #axes = document.getElementById("key-axes");
+  #last = "";
+
+  constructor() {
+    document.getElementById("key-marks").replaceChildren(...signs.map(([shape, text]) =>
+      make("li", {}, sign(shape), text)));
+  }
+
+  // show takes the key of a frame.
+  show(key) {
+    this.#showScale(key.pixel, key.length);
+    this.#showAxes(key.axes);
+    const same = `${key.colour} ${key.unit} ${key.low} ${key.high} ${key.table}`;
+    if (same === this.#last) return;
+    this.#last = same;
+    this.#showColours(key);
+  }
+
+  #showColours(key) {
+    if (key.colour === "none") return this.#colours.replaceChildren();
+    const bytes = Uint8Array.from(atob(key.table), (c) => c.charCodeAt(0));
+    const canvas = make("canvas", { width: 255, height: 1, "aria-hidden": "true" });
+    const image = new ImageData(255, 1);
+    for (let i = 0; i < 255; i++) {
+      for (let k = 0; k < 3; k++) image.data[4 * i + k] = bytes[3 * (i + 1) + k];
+      image.data[4 * i + 3] = 255;
+    }
+    canvas.getContext("2d").putImageData(image, 0, 0);
+    const step = niceStep((key.high - key.low) / 4);
+    const ticks = [];
+    for (let n = Math.ceil(key.low / step - 1e-9); n * step <= key.high + 1e-9 * step; n++) {
+      const at = ((n * step - key.low) / (key.high - key.low)) * barWidth;
+      ticks.push(make("i", { style: `left:${at}px` }, number(Number((n * step).toPrecision(6)))));
+    }
+    const title = titles[key.colour] + (key.unit ? ` [${key.unit}]` : "");
+    this.#colours.replaceChildren(make("p", {}, title), canvas, make("div", { class: "ticks" }, ...ticks));
+    this.#colours.setAttribute("aria-label", `${title}, colours from ${number(key.low)} to ${number(key.high)}`);
+  }
+
+  #showScale(pixel, unit) {
+    if (!(pixel > 0)) return;
+    const length = niceStep(70 * pixel), wide = length / pixel;
+    this.#scale.firstElementChild.style.width = `${wide}px`;
+    this.#scale.lastElementChild.textContent = `${number(length, unit || "units of the file")}`;
+  }
+
+  #showAxes(axes) {
+    const parts = [];
+    for (const [i, [x, y]] of axes.entries()) {
+      const far = { x: 24 + 17 * x, y: 24 + 17 * y };
+      parts.push(draw("line", { x1: 24, y1: 24, x2: far.x, y2: far.y, stroke: "currentColor", "stroke-width": 1.4 }));
+      const label = draw("text", { x: 24 + 22 * x, y: 24 + 22 * y + 3.5, "text-anchor": "middle", "font-size": 11, fill: "currentColor" });
+      label.textContent = "xyz"[i];
+      if (Math.hypot(x, y) > 0.25) parts.push(label);
+    }
+    this.#axes.replaceChildren(...parts);
+  }
+}
+
+// niceStep returns 1, 2 or 5 times a power of ten, at least x.
+function niceStep(x) {
+  const power = 10 ** Math.floor(Math.log10(x));
+  return [1, 2, 5, 10].map((k) => k * power).find((s) => s >= x * (1 - 1e-9));
+}
+
+// What the marks and lines of a picture mean; the forms are those of package render.
+const signs = [
+  ["node", "node"], ["focus", "focus"], ["saddle", "saddle"], ["degenerate", "degenerate"],
+  ["filled", "filled: separation"], ["hollow", "hollow: attachment"],
+  ["unbroken", "separation line"], ["dashed", "attachment line"],
+];
+
+const red = "var(--separation)", green = "var(--attachment)";
+const shapes = {
+  node: () => [draw("circle", { cx: 9, cy: 7, r: 4.4, fill: "currentColor" })],
+  focus: () => [draw("circle", { cx: 9, cy: 7, r: 4.4, fill: "currentColor" }),
+    draw("path", { d: "M13.4 7c.6-4-3.4-6.6-6.8-5.4", fill: "none", stroke: "currentColor", "stroke-width": 1.6 })],
+  saddle: () => [draw("path", { d: "M9 1.2Q9.8 6.2 14.8 7Q9.8 7.8 9 12.8Q8.2 7.8 3.2 7Q8.2 6.2 9 1.2Z", fill: "currentColor", stroke: "currentColor", "stroke-width": 1.6 })],
+  degenerate: () => [draw("rect", { x: 5, y: 3, width: 8, height: 8, fill: "currentColor" })],
+  filled: () => [draw("circle", { cx: 9, cy: 7, r: 4.4, fill: red })],
+  hollow: () => [draw("circle", { cx: 9, cy: 7, r: 3.8, fill: "var(--field)", stroke: green, "stroke-width": 1.8 })],
+  unbroken: () => [draw("line", { x1: 0, x2: 18, y1: 7, y2: 7, stroke: red, "stroke-width": 2.2 })],
+  dashed: () => [draw("line", { x1: 0, x2: 18, y1: 7, y2: 7, stroke: green, "stroke-width": 2.2, "stroke-dasharray": "5 2.5" })],
+};
+
+const sign = (shape) => draw("svg", { viewBox: "0 0 18 14", width: 18, height: 14, "aria-hidden": "true" }, ...shapes[shape]());
