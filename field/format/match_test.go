@@ -236,6 +236,9 @@ func TestQuadrilateralCentresOnHalves(t *testing.T) {
 		}
 		whole := load(t, "whole", table, format.Options{Surface: runFile(t, name+".ply")})
 		halves := load(t, "halves", table, format.Options{Surface: stlOf(raw), SurfaceName: "h.stl"})
+		if s, _ := finding(halves.Findings, "sign"); s.Level != field.Doubtful { // by the pressure alone
+			t.Errorf("%s: the sign was not doubted: %+v", name, halves.Findings)
+		}
 		m, ok := finding(halves.Findings, "matched-loosely")
 		if !ok || m.Level != field.Doubtful || m.Count < len(raw.Tris)*99/100 {
 			t.Errorf("%s: %d of %d: %+v", name, m.Count, len(raw.Tris), halves.Findings)
