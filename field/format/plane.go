@@ -42,9 +42,8 @@ func triangulate(src source, raw *field.Raw) error {
 	}
 	raw.Tris = kept
 	note(raw, field.Doubtful, "reconstructed", len(kept), "",
-		"the table has no triangles: %d were made between its points in their best plane (Delaunay), %d long ones at "+
-			"rims and "+
-			"gaps left out; holes and edges of the body may be bridged; give the geometry with --surface if there is one",
+		"the table has no triangles: %d were made between its points in their best plane (Delaunay), %d long ones at rims "+
+			"and gaps left out; holes and edges of the body may be bridged; give the geometry with --surface if there is one",
 		len(kept), made-len(kept))
 	return nil
 }

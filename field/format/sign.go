@@ -88,8 +88,7 @@ func tellSign(raw *field.Raw, stream r3.Vec) {
 		note(raw, field.Note, "sign-unknown", 0, "", "nothing in the run tells the sign of tau")
 	case sum < -signLevel:
 		note(raw, field.Doubtful, "sign", 0, "", "tau points against the flow (%s): it looks like the stress of the wall "+
-			"on the "+
-			"fluid; --flip turns it", why)
+			"on the fluid; --flip turns it", why)
 	case sum > signLevel:
 		note(raw, field.Note, "sign", 0, "", "tau points along the flow (%s)", why)
 	default:
@@ -101,6 +100,9 @@ func tellSign(raw *field.Raw, stream r3.Vec) {
 // the hut the mean falls from 0.92 at this share to 0.08 at twice it: deep suction stretches the range.
 const highPressure = 0.15
 
+// uniform is the relative variation below which a pressure is one number with rounding errors.
+const uniform = 1e-9
+
 // cosAtHighPressure returns the mean cosine between tau and the falling pressure, weighted by area, where the
 // pressure is highest. ok is false without pressure or variation.
 func cosAtHighPressure(raw *field.Raw) (mean float64, ok bool) {
@@ -111,7 +113,7 @@ func cosAtHighPressure(raw *field.Raw) (mean float64, ok bool) {
 			lo, hi = math.Min(lo, x), math.Max(hi, x)
 		}
 	}
-	if !(hi > lo) {
+	if !(hi-lo > float64(uniform*math.Max(math.Abs(hi), math.Abs(lo)))) {
 		return 0, false
 	}
 	level := hi - float64(highPressure*(hi-lo))
