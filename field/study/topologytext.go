@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"slices"
 	"strings"
 
 	"shearprint/field/topology"
@@ -191,20 +192,23 @@ func (l *Line) describe(run Run) string {
 	} else if n > 0 {
 		words += ", through " + place(l.Points[0])
 	}
-	if lo, hi, ok := l.angles(); ok {
-		words += fmt.Sprintf("; the surface that leaves the wall stands at %.0f to %.0f degrees to it", lo, hi)
+	if angles := l.knownAngles(); len(angles) > 0 {
+		words += fmt.Sprintf("; the surface that leaves the wall stands at %.0f degrees to it in the middle of its values, which "+
+			"run from %.0f to %.0f", angles[len(angles)/2], angles[0], angles[len(angles)-1])
 	}
 	return words + "."
 }
 
-func (l *Line) angles() (lo, hi float64, ok bool) {
-	lo, hi = math.Inf(1), math.Inf(-1)
+// knownAngles returns the angles of the separation surface in ascending order [degrees].
+func (l *Line) knownAngles() []float64 {
+	var known []float64
 	for _, a := range l.Angle {
 		if x := float64(a); x == x {
-			lo, hi, ok = math.Min(lo, x), math.Max(hi, x), true
+			known = append(known, x)
 		}
 	}
-	return lo, hi, ok
+	slices.Sort(known)
+	return known
 }
 
 // unsure is the confidence below which a type is called doubtful: one chance in ten that it is another.
