@@ -193,8 +193,8 @@ func (l *Line) describe(run Run) string {
 		words += ", through " + place(l.Points[0])
 	}
 	if angles := l.knownAngles(); len(angles) > 0 {
-		words += fmt.Sprintf("; the surface that leaves the wall stands at %.0f degrees to it in the middle of its values, which "+
-			"run from %.0f to %.0f", angles[len(angles)/2], angles[0], angles[len(angles)-1])
+		words += fmt.Sprintf("; the surface that leaves the wall stands at %.0f degrees to it (median; from %.0f to %.0f)",
+			angles[len(angles)/2], angles[0], angles[len(angles)-1])
 	}
 	return words + "."
 }
