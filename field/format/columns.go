@@ -16,7 +16,6 @@ var (
 	cfNames = []string{"cf", "coefskinfriction", "skinfrictioncoefficient", "skinfrictioncoef", "skinfrictioncoeff",
 		"frictioncoefficient", "frictioncoeff", "cfmean", "meancf"}
 	velocityNames = []string{"velocity", "u", "vel", "v", "velocityvector", "wallvelocity", "nearwallvelocity"}
-	normalNames   = []string{"n", "normal", "normals", "facenormal", "unitnormal", "surfacenormal"}
 	pNames        = []string{"p", "pressure", "staticpressure", "pstatic", "prel", "pgauge", "pressuregauge",
 		"gaugepressure", "relativepressure", "wallpressure", "surfacepressure", "pwall", "pmean", "meanpressure",
 		"pressuremean", "absolutepressure", "pabs"}
@@ -27,15 +26,13 @@ var (
 // columns says which column holds what; -1 where none does.
 type columns struct {
 	labels           []label
-	x, tau, n        [3]int
+	x, tau           [3]int
 	p, cp            int
-	i, j, k          int // structured grid
-	area             int
+	i, j, k          int    // structured grid
 	tauName          string // base name of tau, as found
 	coefficient      bool   // tau is a skin-friction coefficient
 	contractTau      bool   // tau has the contract's own name, which means Pa
 	velocity         bool   // tau is a velocity, as the user's name tells
-	atFaces          bool   // names tell that rows are face centres
 	xUnit, tUnit, pU string // bracketed units, "" where not told
 
 	missing [3]error // names that the user gave for tau, p and cp and that are not among these
@@ -47,16 +44,12 @@ const maxColumns = 4096
 // matchColumns finds the quantities among the names. Whether what is missing matters is for the caller to say.
 func matchColumns(src source, names []string, opt Options) columns {
 	none := [3]int{-1, -1, -1}
-	c := columns{x: none, tau: none, n: none, p: -1, cp: -1, i: -1, j: -1, k: -1, area: -1}
+	c := columns{x: none, tau: none, p: -1, cp: -1, i: -1, j: -1, k: -1}
 	c.labels = make([]label, len(names))
 	for i, n := range names {
 		c.labels[i] = parseLabel(n)
 	}
-	var base string
-	c.x, base = c.vector(positionNames, 2)
-	c.atFaces = strings.HasPrefix(base, "ce") || strings.HasPrefix(base, "face")
-	c.n, _ = c.vector(normalNames, 3)
-	c.area = c.scalar([]string{"area", "facearea", "cellarea"})
+	c.x, _ = c.vector(positionNames, 2)
 	c.i, c.j = c.scalar([]string{"i", "iindex", "indexi"}), c.scalar([]string{"j", "jindex", "indexj"})
 	c.k = c.scalar([]string{"k", "kindex", "indexk"})
 	c.missing[0] = c.findTau(src, opt.Tau)

@@ -81,7 +81,7 @@ func trailingBracket(s string) (inner, rest string, ok bool) {
 	return strings.TrimSpace(s[at+1 : len(s)-1]), strings.TrimSpace(s[:at]), true
 }
 
-// component reads x y z, i j k, u v w? no: only letters and numbers that name nothing but a direction.
+// component reads a direction: x y z, i j k, or a number from 0 to 3; -1 for anything else.
 func component(s string) (comp int, num bool) {
 	switch strings.ToLower(s) {
 	case "x", "i":

@@ -11,13 +11,12 @@ import (
 	"shearprint/field/r3"
 )
 
-// halfSphere is the part y >= at of a sphere whose mesh has vertices on that plane, moved so that the plane is y = at.
+// halfSphere is the half y >= 0 of a sphere whose mesh has vertices on that plane, moved so that the plane is y = at; dust
+// puts the points off it.
 func halfSphere(at float64, dust float64) field.Raw {
-	whole := sphereRaw(2000)
-	var raw field.Raw
+	var whole, raw field.Raw
 	number := map[int32]int32{}
 	const n, rows = 48, 24
-	whole = field.Raw{}
 	for j := range rows + 1 {
 		for i := range n {
 			a, b := 2*math.Pi*float64(i)/n, math.Pi*float64(j)/rows
