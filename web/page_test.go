@@ -1,21 +1,284 @@
 package web_test
 
-import "testing"
+import (
+	"bytes"
+	"context"
+	"encoding/base64"
+	"image/png"
+	"math"
+	"strings"
+	"testing"
 
+	"github.com/chromedp/cdproto/input"
+	"github.com/chromedp/chromedp"
+
+	"shearprint/field/format"
+	"shearprint/field/study"
+	"shearprint/testdata/demo"
+)
+
+type view struct {
+	Run    string      `json:"run"`
+	Eye    [3]float64  `json:"eye"`
+	Target [3]float64  `json:"target"`
+	Colour string      `json:"colour"`
+	Theme  string      `json:"theme"`
+	Floor  float64     `json:"floor"`
+	At     *[3]float64 `json:"at"`
+	Link   string      `json:"link"`
+}
+
+func (v view) distance() float64 {
+	return math.Hypot(math.Hypot(v.Eye[0]-v.Target[0], v.Eye[1]-v.Target[1]), v.Eye[2]-v.Target[2])
+}
+
+func (b *tab) view() view { return eval[view](b, `shearprint.call("view")`) }
+
+// drag moves the mouse with the left button down.
+func (b *tab) drag(x0, y0, x1, y1 float64, steps int) {
+	b.Helper()
+	b.do(chromedp.ActionFunc(func(ctx context.Context) error {
+		send := func(kind input.MouseType, x, y float64, held int64) error {
+			return input.DispatchMouseEvent(kind, x, y).WithButton(input.Left).WithButtons(held).WithClickCount(1).Do(ctx)
+		}
+		if err := send(input.MousePressed, x0, y0, 1); err != nil {
+			return err
+		}
+		for i := 1; i <= steps; i++ {
+			s := float64(i) / float64(steps)
+			if err := send(input.MouseMoved, x0+s*(x1-x0), y0+s*(y1-y0), 1); err != nil {
+				return err
+			}
+		}
+		return send(input.MouseReleased, x1, y1, 0)
+	}))
+}
+
+// The page starts with a picture, a balanced ledger, its timings, and no alert.
 func TestStart(t *testing.T) {
-	b := visit(t, 1280, 720, "")
+	b := visit(t, 1280, 720, "?present=cpu")
 	b.until(ready)
 	b.settle()
 	b.shot("start")
-	t.Log(eval[map[string]any](b, `shearprint.call("timings")`))
+	if text := b.alert(); text != "" {
+		t.Errorf("the page starts with an alert: %s", text)
+	}
+	rows := eval[int](b, `document.querySelectorAll("#book tbody tr").length`)
+	if verdict := eval[string](b, `document.getElementById("verdict").textContent`); rows < 4 || !strings.Contains(verdict, "balances") {
+		t.Errorf("the ledger has %d rows and says %q", rows, verdict)
+	}
+	timings := eval[map[string]*float64](b, `shearprint.call("timings")`)
+	for _, name := range []string{"download", "start", "load", "topology", "first_picture", "frame_moving", "frame_still"} {
+		if ms := timings[name]; ms == nil || !(*ms > 0) {
+			t.Errorf("timings lack %s", name)
+			continue
+		}
+		t.Logf("%s: %.0f ms", name, *timings[name])
+	}
+	if b.painted() < 2000 {
+		t.Errorf("the stage shows one colour")
+	}
 }
 
+// painted returns the number of pixels of the plain canvas that differ from its corner, on a coarse grid.
+func (b *tab) painted() int {
+	b.Helper()
+	return eval[int](b, `(() => {
+		const c = document.getElementById("picture"), d = c.getContext("2d").getImageData(0, 0, c.width, c.height).data;
+		let n = 0;
+		for (let i = 0; i < d.length; i += 16) if (Math.abs(d[i] - d[0]) + Math.abs(d[i + 1] - d[1]) > 12) n++;
+		return n;
+	})()`)
+}
+
+// A click on a saddle on the stage opens its card; the link then holds the place, and opens the same view.
 func TestClickOnSaddle(t *testing.T) {
-	b := visit(t, 1280, 720, "")
+	b := visit(t, 1280, 720, "?present=cpu")
 	b.until(ready)
-	b.settle()
-	eval[any](b, `document.querySelector("#book tr[data-id=S1]").click()`)
+	b.do(chromedp.Evaluate(`document.querySelector("#book tr[data-id=S1]").click()`, nil))
 	b.until(`!document.getElementById("card").hidden`)
 	b.settle()
+	b.do(chromedp.Evaluate(`document.querySelector("#card button[aria-label='Close the card']").click()`, nil))
+	b.settle()
+	// The row has flown the camera there: the saddle is in the middle of what the ledger leaves free.
+	at := eval[[2]float64](b, `(() => {
+		const l = document.getElementById("ledger").getBoundingClientRect(), h = document.getElementById("head").getBoundingClientRect();
+		const k = document.getElementById("key").getBoundingClientRect();
+		return [(l.right + innerWidth) / 2, (h.bottom + k.top) / 2];
+	})()`)
+	b.drag(at[0], at[1], at[0], at[1], 0)
+	b.until(`document.querySelector("#card h2")?.textContent.startsWith("S1: saddle")`)
+	b.settle()
 	b.shot("saddle")
+	card := eval[string](b, `document.getElementById("card").innerText`)
+	for _, word := range []string{"Position", "tau", "Pressure p", "cp", "Jacobian", "Eigenvalues", "Trace", "Determinant", "Type", "Sense",
+		"Confidence", "Pa/m", "eigenvectors"} {
+		if !strings.Contains(card, word) {
+			t.Errorf("the card lacks %s", word)
+		}
+	}
+	v := b.view()
+	if v.At == nil || !strings.Contains(v.Link, "at=") {
+		t.Fatalf("the view does not hold the place: %+v", v)
+	}
+	other := visit(t, 1280, 720, "?present=cpu"+v.Link)
+	other.until(ready)
+	other.until(`document.querySelector("#card h2")?.textContent.startsWith("S1: saddle")`)
+	if w := other.view(); w.Link != v.Link {
+		t.Errorf("the link\n%s\nopens\n%s", v.Link, w.Link)
+	}
+}
+
+// A drag turns the run, the wheel comes closer to what is under the pointer, keys do both.
+func TestHand(t *testing.T) {
+	b := visit(t, 1280, 720, "?present=cpu")
+	b.until(ready)
+	b.settle()
+	start := b.view()
+	b.drag(700, 300, 900, 380, 60)
+	b.settle()
+	b.shot("orbit")
+	turned := b.view()
+	if turned.Eye == start.Eye || math.Abs(turned.distance()/start.distance()-1) > 1e-6 {
+		t.Errorf("a drag moved the eye from %v to %v", start.Eye, turned.Eye)
+	}
+	t.Logf("timings after 60 moves: %v", eval[map[string]float64](b, `shearprint.call("timings")`))
+	b.do(chromedp.ActionFunc(func(ctx context.Context) error {
+		return input.DispatchMouseEvent(input.MouseWheel, 700, 300).WithDeltaX(0).WithDeltaY(-240).Do(ctx)
+	}))
+	b.settle()
+	closer := b.view()
+	if !(closer.distance() < 0.9*turned.distance()) {
+		t.Errorf("the wheel left the distance at %g after %g", closer.distance(), turned.distance())
+	}
+	b.do(chromedp.Focus("#stage"), chromedp.KeyEvent("+"))
+	b.settle()
+	keyed := b.view()
+	if !(keyed.distance() < closer.distance()) {
+		t.Error("the plus key comes no closer")
+	}
+	b.do(chromedp.KeyEvent("\u0301")) // a key that means nothing
+	b.do(chromedp.KeyEvent("\uE014")) // arrow right, as WebDriver numbers it
+	b.do(chromedp.KeyEvent("\u001b"))
+	if alert := b.alert(); alert != "" {
+		t.Errorf("keys raise an alert: %s", alert)
+	}
+}
+
+// The page's answers are the bytes of the command line.
+func TestCallsAreTheCommands(t *testing.T) {
+	f, err := format.Load(demo.Name, demo.Radome, format.Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	s := study.New(f)
+	b := visit(t, 800, 600, "?present=cpu")
+	b.until(ready)
+	for _, c := range []struct{ name, args string }{
+		{"inspect", `{}`}, {"topology", `{}`}, {"topology", `{"min_robustness": "1%"}`},
+		{"probe", `{"at": [-0.5, 0, 0.4]}`}, {"trace", `{"at": [-0.5, 0.1, 0.4]}`},
+		{"loop", `{"through": [[0, -1, 0], [1, 0, 0], [0, 1, 0], [-1, 0, 0]]}`},
+		{"ledger", `{"body": "isolated", "nodes": 2, "saddles": 0}`},
+	} {
+		want, err := s.Call(context.Background(), c.name, []byte(c.args))
+		if err != nil {
+			t.Fatal(err)
+		}
+		got := eval[string](b, `shearprint.call("`+c.name+`", {...`+c.args+`, text: true})`)
+		if got != string(want) {
+			t.Errorf("%s %s: the page answers\n%.300s\nthe command line\n%.300s", c.name, c.args, got, want)
+		}
+		if object := eval[map[string]any](b, `shearprint.call("`+c.name+`", `+c.args+`)`); object["schema"] == nil {
+			t.Errorf("%s: the answer is no object with a schema", c.name)
+		}
+	}
+	if text := eval[string](b, `shearprint.call("probe", {at: [900, 0, 0]}).then(() => "", (e) => e.message)`); !strings.Contains(text, "off the surface") {
+		t.Errorf("a probe far away: %q", text)
+	}
+	if text := eval[string](b, `shearprint.call("nonsense").then(() => "", (e) => e.message)`); !strings.Contains(text, "nonsense") {
+		t.Errorf("an unknown call: %q", text)
+	}
+}
+
+// A bad file is told and leaves the run that is open; a good one replaces it.
+func TestDrop(t *testing.T) {
+	b := visit(t, 1000, 700, "?present=cpu")
+	b.until(ready)
+	b.drop("notes.ply", []byte("ply\nformat ascii 1.0\nelement vertex three\n"))
+	b.until(`document.documentElement.dataset.state === "error"`)
+	if text := b.alert(); !strings.Contains(text, "otes.ply") {
+		t.Errorf("the alert says %q", text)
+	}
+	b.shot("bad-file")
+	if v := b.view(); v.Run != demo.Name {
+		t.Errorf("after a bad file the run is %q", v.Run)
+	}
+	if rows := eval[int](b, `document.querySelectorAll("#book tbody tr").length`); rows < 4 {
+		t.Errorf("after a bad file the ledger has %d rows", rows)
+	}
+	b.drop("ball.ply", ball(t))
+	b.until(ready + ` && !document.getElementById("run").textContent.startsWith("radome")`)
+	b.settle()
+	b.shot("ball")
+	if text := b.alert(); text != "" {
+		t.Errorf("after a good file the alert still says %q", text)
+	}
+	if v := b.view(); v.Run != "ball.ply" {
+		t.Errorf("after a good file the run is %q", v.Run)
+	}
+}
+
+// Both presenters show the same picture.
+func TestPresentersAgree(t *testing.T) {
+	cpu, gpu := visit(t, 900, 600, "?present=cpu"), visit(t, 900, 600, "?present=gpu")
+	cpu.until(ready)
+	cpu.settle()
+	gpu.until(ready)
+	gpu.settle()
+	if name := eval[string](gpu, "document.documentElement.dataset.present"); name != "gpu" {
+		t.Fatalf("the GPU's presenter does not start: %q presents", name)
+	}
+	hide := `(() => { for (const e of document.querySelectorAll("header, aside, section, footer")) e.style.visibility = "hidden"; })()`
+	cpu.do(chromedp.Evaluate(hide, nil))
+	gpu.do(chromedp.Evaluate(hide, nil))
+	gpu.shot("gpu")
+	a, b := cpu.capture(), gpu.capture()
+	worst, n := 0, 0
+	for i := range a {
+		d := int(a[i]) - int(b[i])
+		if d = max(d, -d); d > 2 {
+			n++
+		}
+		worst = max(worst, d)
+	}
+	if len(a) != len(b) || n > 0 {
+		t.Errorf("%d of %d values differ by more than 2, the worst by %d", n, len(a), worst)
+	}
+	t.Logf("the largest difference is %d of 255", worst)
+}
+
+// capture returns the tab's pixels.
+func (b *tab) capture() []byte {
+	b.Helper()
+	var data []byte
+	b.do(chromedp.CaptureScreenshot(&data))
+	return pixels(b.T, data)
+}
+
+// The picture call gives a PNG of the wanted size.
+func TestPicture(t *testing.T) {
+	b := visit(t, 800, 600, "?present=cpu")
+	b.until(ready)
+	address := eval[string](b, `shearprint.call("picture", {width: 640, height: 360})`)
+	data, err := base64.StdEncoding.DecodeString(strings.TrimPrefix(address, "data:image/png;base64,"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	img, err := png.Decode(bytes.NewReader(data))
+	if err != nil {
+		t.Fatal(err)
+	}
+	if size := img.Bounds().Size(); size.X != 640 || size.Y != 360 {
+		t.Errorf("the picture has %v pixels", size)
+	}
 }

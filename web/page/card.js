@@ -139,7 +139,7 @@ function chart(trace, det) {
   draw("line", { x1: x0, x2: x0, y1: 16, y2: H - 26, stroke: "currentColor", opacity: 0.3 }),
   draw("path", { d: curve, fill: "none", stroke: "currentColor", "stroke-dasharray": "4 3" }),
   label(x0, 12, "determinant"), label(x0 - 5, 34, "foci", "end"), label(x0 + 5, 34, "foci", "start"),
-  label(4, y0 - 6, "nodes", "start"), label(W - 4, y0 - 6, "nodes", "end"), label(x0, y0 + 22, "saddles"),
+  label(4, y0 - 6, "nodes", "start"), label(W - 4, y0 - 6, "nodes", "end"), label(x0 - 22, y0 + 14, "saddles", "end"),
   label(4, H - 16, "\u2190 separation", "start"), label(W - 4, H - 5, "attachment \u2192", "end"), label(W - 4, y0 + 11, "trace", "end"),
   draw("circle", { cx: px(t), cy: Math.max(20, Math.min(H - 32, py(d))), r: 4.5, fill: "var(--mark)", stroke: "var(--ink)" }));
   return make("figure", {}, svg, make("figcaption", {}, "Kind of the Jacobian"));

@@ -3,7 +3,7 @@
 import { make, draw, number } from "./words.js";
 
 const titles = { cp: "Pressure coefficient cp", p: "Pressure p", tau: "Wall shear stress |tau|" };
-const barWidth = 210, barHeight = 12; // CSS pixels
+const barWidth = 170; // CSS pixels, as in the style sheet
 
 export class Key {
   #colours = document.getElementById("key-colours");
@@ -49,7 +49,7 @@ export class Key {
 
   #showScale(pixel, unit) {
     if (!(pixel > 0)) return;
-    const length = niceStep(70 * pixel), wide = length / pixel;
+    const length = niceStep(50 * pixel), wide = length / pixel;
     this.#scale.firstElementChild.style.width = `${wide}px`;
     this.#scale.lastElementChild.textContent = `${number(length, unit || "units of the file")}`;
   }
