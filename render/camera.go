@@ -56,7 +56,8 @@ func (c Camera) Height() float64 {
 func (c Camera) Orbit(yaw, pitch float64) Camera {
 	_, up, forward := c.axes()
 	elevation := r3.Atan2(-forward.Dot(vertical), r3.Hypot(forward.X, forward.Y))
-	if up.Dot(vertical) < 0 { // hanging upside down: leave it free
+	const upright = -1e-6           // up is level at the poles, give or take rounding
+	if up.Dot(vertical) < upright { // hanging upside down: leave it free
 		elevation = 0
 	}
 	pitch = min(max(pitch, -math.Pi/2-elevation), math.Pi/2-elevation)

@@ -20,6 +20,9 @@ type smear struct {
 	serve   int
 	animate bool
 	soften  bool
+	// enough is the number of a pixel's four neighbours that streamlines have crossed which makes one of its own
+	// unnecessary: with 3 the texture is sharper, with 2 it takes a quarter less time.
+	enough int
 }
 
 // reach returns how far a pixel's texture depends on others [pixels].
@@ -107,77 +110,91 @@ func (p *plate) band(t *tracer, s smear, channels, from, to int) {
 	const stride = 5
 	for start := range stride {
 		for y := from + start; y < to; y += stride {
-			for x := range p.w {
-				i := y*p.w + x
-				if t.count[i-lo] == 0 && p.fade[i] != 0 && p.crossed(t, i, lo, hi) < 2 {
-					p.streamline(t, s, channels, i, lo, hi)
+			row, fade := t.count[y*p.w-lo:][:p.w], p.fade[y*p.w:][:p.w]
+			above, below := p.neighbours(t.count, y, from, to)
+			for x, n := range row {
+				if n != 0 || fade[x] == 0 {
+					continue
+				}
+				// A pixel between two that a streamline has crossed needs none of its own: it takes their mean.
+				crossed := 0
+				if above[x] != 0 {
+					crossed++
+				}
+				if below[x] != 0 {
+					crossed++
+				}
+				if x > 0 && row[x-1] != 0 {
+					crossed++
+				}
+				if x+1 < len(row) && row[x+1] != 0 {
+					crossed++
+				}
+				if crossed < s.enough {
+					p.streamline(t, s, channels, y*p.w+x, lo, hi)
 				}
 			}
 		}
 	}
 	for c := range channels {
+		acc := t.acc[c]
 		for i, n := range t.count {
 			if n > 1 {
-				t.acc[c][i] /= float32(n)
+				acc[i] /= float32(n)
 			}
 		}
-		for i, n := range t.count {
-			fade := p.fade[lo+i]
-			if fade == 0 {
-				p.tex[c][lo+i] = 128
-				continue
-			}
-			v := t.acc[c][i]
-			if n == 0 {
-				v = p.between(t, t.acc[c], lo+i, lo, hi)
-			}
-			p.tex[c][lo+i] = textureByte(v * float32(fade) * (1.0 / 255))
+		for y := from; y < to; y++ {
+			p.finish(t, c, y, from, to)
 		}
 	}
 }
 
-// crossed returns how many of the four neighbours of pixel i a streamline has crossed. A pixel between two of them needs
-// no streamline of its own: it takes their mean.
-func (p *plate) crossed(t *tracer, i, lo, hi int) int {
-	n := 0
-	x := i % p.w
-	if x > 0 && t.count[i-1-lo] != 0 {
-		n++
-	}
-	if x+1 < p.w && t.count[i+1-lo] != 0 {
-		n++
-	}
-	if i-p.w >= lo && t.count[i-p.w-lo] != 0 {
-		n++
-	}
-	if i+p.w < hi && t.count[i+p.w-lo] != 0 {
-		n++
-	}
-	return n
+// neighbours returns the counts of the rows above and below row y of a band; at the band's ends those of the row itself.
+func (p *plate) neighbours(count []uint16, y, from, to int) (above, below []uint16) {
+	row := func(y int) []uint16 { return count[(y-from)*p.w:][:p.w] }
+	return row(max(y-1, from)), row(min(y+1, to-1))
 }
 
-// between returns the mean of the neighbours of pixel i that a streamline has crossed.
-func (p *plate) between(t *tracer, acc []float32, i, lo, hi int) float32 {
-	var sum, n float32
-	x := i % p.w
-	for k, j := range [4]int{i - 1, i + 1, i - p.w, i + p.w} {
-		if k == 0 && x == 0 || k == 1 && x+1 == p.w || j < lo || j >= hi || t.count[j-lo] == 0 {
+// finish turns the means of a row of a band into bytes; pixels that no streamline has crossed take the mean of those of
+// their four neighbours that one has.
+func (p *plate) finish(t *tracer, c, y, from, to int) {
+	base := (y - from) * p.w
+	acc, count := t.acc[c], t.count
+	fade, out := p.fade[y*p.w:][:p.w], p.tex[c][y*p.w:][:p.w]
+	for x := range out {
+		if fade[x] == 0 {
+			out[x] = 128
 			continue
 		}
-		sum += acc[j-lo]
-		n++
+		i := base + x
+		v := acc[i]
+		if count[i] == 0 {
+			n := float32(0)
+			if x > 0 && count[i-1] != 0 {
+				v, n = v+acc[i-1], n+1
+			}
+			if x+1 < p.w && count[i+1] != 0 {
+				v, n = v+acc[i+1], n+1
+			}
+			if y > from && count[i-p.w] != 0 {
+				v, n = v+acc[i-p.w], n+1
+			}
+			if y+1 < to && count[i+p.w] != 0 {
+				v, n = v+acc[i+p.w], n+1
+			}
+			if n > 1 {
+				v /= n
+			}
+		}
+		out[x] = textureByte(float32(v*float32(fade[x])) * (1.0 / 255))
 	}
-	if n == 0 {
-		return 0
-	}
-	return sum / n
 }
 
 // textureSpread is the number of standard deviations of the texture that a byte holds on each side of its middle.
 const textureSpread = 3.2
 
 func textureByte(v float32) uint8 {
-	return uint8(min(max(float32(v*(127/textureSpread))+128.5, 1), 255))
+	return uint8(min(max(int32(float32(v*(127/textureSpread))+128.5), 1), 255)) // whole numbers: their min and max need no call
 }
 
 // streamline adds the convolution along the streamline through pixel i to the pixels in lo..hi that it crosses.
@@ -218,7 +235,7 @@ func (p *plate) streamline(t *tracer, s smear, channels, i, lo, hi int) {
 			const root2 = 1.41421356
 			a, b := float32(t.sum[1][k]*gain)*root2, float32(t.sum[2][k]*gain)*root2
 			t.acc[1][at] += float32(a*t.cos[k]) + float32(b*t.sin[k])
-			t.acc[2][at] += float32(b*t.cos[k]) - float32(a*t.sin[k])
+			t.acc[2][at] += float32(a*t.sin[k]) - float32(b*t.cos[k])
 		}
 	}
 }
@@ -249,17 +266,18 @@ func tent(value, box, sum []float32, half int) {
 // fewer where the surface or the direction ends. Steps are by the midpoint rule; where the direction turns by more than
 // half a right angle within half a step, the step is halved.
 func (p *plate) walk(at []int32, i int, sign float32) int {
-	w, rows := p.w, p.bottom-p.top
-	x, y := float32(i%w)+0.5, float32(i/w)+0.5
-	right, bottom := float32(w), float32(rows)
+	w, top := p.w, p.top
+	// Rows are counted from the frame's top, so that rounding is the same in every strip.
+	x, y := float32(i%w)+0.5, float32(i/w+top)+0.5
+	right, upper, lower := float32(w), float32(top), float32(p.bottom)
 	for k := range at {
 		d := p.dirs[i]
 		h := 0.5 * sign
 		mx, my := x+float32(h*d.x), y+float32(h*d.y)
-		if !(mx >= 0 && mx < right && my >= 0 && my < bottom) {
+		if !(mx >= 0 && mx < right && my >= upper && my < lower) {
 			return k
 		}
-		e := p.dirs[int(my)*w+int(mx)]
+		e := p.dirs[(int(my)-top)*w+int(mx)]
 		turn := float32(d.x*e.x) + float32(d.y*e.y)
 		if turn < 0.7 {
 			if turn == 0 && e == (direction{}) {
@@ -274,10 +292,10 @@ func (p *plate) walk(at []int32, i int, sign float32) int {
 		}
 		x += float32(2 * h * e.x)
 		y += float32(2 * h * e.y)
-		if !(x >= 0 && x < right && y >= 0 && y < bottom) {
+		if !(x >= 0 && x < right && y >= upper && y < lower) {
 			return k
 		}
-		j := int(y)*w + int(x)
+		j := (int(y)-top)*w + int(x)
 		if p.dirs[j] == (direction{}) {
 			return k
 		}

@@ -79,6 +79,7 @@ type textureKey struct {
 	surfaceKey
 	smear smear
 	flow  bool
+	rows  [4]int // convolved from, to, softened from, to
 }
 
 type scalarKey struct {
@@ -269,7 +270,10 @@ func (r *Renderer) stage(ctx context.Context, j *job) error {
 	start = f.Times.lap(&f.Times.Prepare, start)
 	sm := smear{half: max(int(math.Floor(kernelLength*j.pixels+0.5)), 2), animate: s.Animate}
 	sm.serve = 2 * sm.half
-	sm.soften = j.quality == Still
+	sm.soften, sm.enough = j.quality == Still, 2
+	if sm.soften {
+		sm.enough = 3
+	}
 	flow := s.Flow == Texture && !j.sightOnly
 	// The convolution needs whole bands, and rows around them that its streamlines may reach.
 	// Softening needs a row of the neighbouring bands.
@@ -294,9 +298,9 @@ func (r *Renderer) stage(ctx context.Context, j *job) error {
 		r.kept.surface = surface
 	}
 	start = f.Times.lap(&f.Times.Surface, start)
-	texture := textureKey{surface, sm, flow}
+	texture := textureKey{surface, sm, flow, [4]int{from, to, j.top, j.bottom}}
 	if r.kept.texture != texture {
-		if err := r.texture(ctx, texture, from, to, j.top, j.bottom); err != nil {
+		if err := r.texture(ctx, texture); err != nil {
 			return err
 		}
 		r.kept.texture = texture
@@ -318,8 +322,8 @@ func (r *Renderer) stage(ctx context.Context, j *job) error {
 	return err
 }
 
-// texture convolves rows from..to and softens rows top..bottom, or leaves them without texture.
-func (r *Renderer) texture(ctx context.Context, key textureKey, from, to, top, bottom int) error {
+// texture convolves and softens the rows of the key, or leaves them without texture.
+func (r *Renderer) texture(ctx context.Context, key textureKey) error {
 	p := &r.plate
 	if !key.flow {
 		for i := range p.tex[0] {
@@ -327,10 +331,10 @@ func (r *Renderer) texture(ctx context.Context, key textureKey, from, to, top, b
 		}
 		return nil
 	}
-	if err := p.convolve(ctx, key.smear, from, to); err != nil || !key.smear.soften {
+	if err := p.convolve(ctx, key.smear, key.rows[0], key.rows[1]); err != nil || !key.smear.soften {
 		return err
 	}
-	return p.soften(ctx, key.smear, top-p.top, bottom-p.top)
+	return p.soften(ctx, key.smear, key.rows[2]-p.top, key.rows[3]-p.top)
 }
 
 // limits brings the ends of the colours up to date.

@@ -51,8 +51,8 @@ type look struct {
 	pixels float64 // pixels per point
 }
 
-// surfaceRow is one straight kernel, without calls in its loop: it runs once per pixel, and in the browser a call costs as
-// much as ten products.
+// surfaceRow is one straight kernel, without calls in its loop: it runs once per pixel, and in the browser a call (min
+// and max of floats are calls there) costs as much as ten products.
 func (p *plate) surfaceRow(b *body, l *level, lens *Lens, look *look, row int) {
 	lit := lights(b, lens)
 	base := row * p.w
@@ -89,14 +89,14 @@ func (p *plate) surfaceRow(b *body, l *level, lens *Lens, look *look, row int) {
 		if n0[3]+n1[3]+n2[3] != 0 {
 			nx, ny, nz = b.creased(tri, b0, b1, b2)
 		}
-		inverse := 1 / math.Sqrt(max(float64(nx*nx)+float64(ny*ny)+float64(nz*nz), 1e-30))
+		inverse := 1 / math.Sqrt(float64(nx*nx)+float64(ny*ny)+float64(nz*nz)+1e-30)
 		facing := (float64(nx*lit.key.X) + float64(ny*lit.key.Y) + float64(nz*lit.key.Z)) * inverse
 		upward := (float64(nx*lit.sky.X) + float64(ny*lit.sky.Y) + float64(nz*lit.sky.Z)) * inverse
 		k := ambientLight + skyLight/2 + float64(skyLight/2*upward)
 		if facing > 0 {
 			k += float64(keyLight * facing)
 		}
-		shade[x] = uint8(float64(255*min(k, 1)) + 0.5)
+		shade[x] = uint8(min(int32(float64(255*k)+0.5), 255))
 		// Direction.
 		c := &l.tau[h.tri]
 		tx := float64(b0*float64(c[0])) + float64(b1*float64(c[3])) + float64(b2*float64(c[6]))
@@ -120,10 +120,12 @@ func (p *plate) surfaceRow(b *body, l *level, lens *Lens, look *look, row int) {
 		inverse = 1 / length
 		dirs[x] = direction{float32(dx * inverse), float32(dy * inverse)}
 		w := float64(tau*fadeScale) - 0.5 // no texture at half the floor, all of it at one and a half times
-		if w >= 1 {
+		switch {
+		case w >= 1:
 			fade[x] = 255
-		} else {
-			w = max(w, 0)
+		case w <= 0:
+			fade[x] = 0
+		default:
 			fade[x] = uint8(float64(255*w*w*(3-2*w)) + 0.5)
 		}
 		noise[x] = solidNoise(

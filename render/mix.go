@@ -69,20 +69,27 @@ func (l *Layers) quantize(p *plate, from, to, first int, lo, hi float64) {
 			l.Scalar[o] = 0
 			continue
 		}
-		l.Scalar[o] = uint8(min(max(float32((s-low)*scale)+1.5, 1), 255))
+		switch v := float32((s-low)*scale) + 1.5; {
+		case v >= 255:
+			l.Scalar[o] = 255
+		case v >= 1:
+			l.Scalar[o] = uint8(v)
+		default:
+			l.Scalar[o] = 1
+		}
 	}
 }
 
 // mixer holds the tables of a mix.
 type mixer struct {
 	l        *Layers
-	cos, sin int32 // in 1/256
+	cos, sin int32 // in 1/65536
 	curve    [256]int32
 }
 
 func newMixer(l *Layers, phase float64) mixer {
 	s, c := r3.SinCos(2 * math.Pi * (phase - math.Floor(phase)))
-	m := mixer{l: l, cos: int32(math.Floor(c*256 + 0.5)), sin: int32(math.Floor(s*256 + 0.5))}
+	m := mixer{l: l, cos: int32(math.Floor(c*65536 + 0.5)), sin: int32(math.Floor(s*65536 + 0.5))}
 	for i, x := range l.Curve {
 		m.curve[i] = int32(x)
 	}
@@ -104,7 +111,7 @@ func (m *mixer) row(into []byte, i, n int) {
 		a := int32(texture[k])
 		if l.Animated {
 			wave := m.cos*(int32(l.Cos[i+k])-128) + m.sin*(int32(l.Sin[i+k])-128)
-			a = min(max(128+(2*(a-128)+3*(wave>>8))>>2, 0), 255)
+			a = min(max(128+((a-128)<<17+3*wave)>>18, 0), 255)
 		}
 		light := uint32(shade[k]) * uint32(m.curve[a]) >> 7
 		c := &l.Table[scalar[k]]
