@@ -46,14 +46,14 @@ const turnAcross = 0.9 * math.Pi
 // a body that is a dot.
 var zoomRange = [2]float64{1e-5, 50}
 
-// Move returns the camera after the gesture on a stage of that height [CSS pixels]. at is the place under the pointer of a
-// zoom; diagonal the size of the run.
+// Move returns the camera after the gesture on a stage of that height [CSS pixels]. at is the place that stays on the
+// frame: that under the pointer of a zoom, or what an orbit turns about; diagonal the size of the run.
 func (g Gesture) Move(c render.Camera, height float64, at r3.Vec, diagonal float64) render.Camera {
 	height = max(height, 1)
 	switch g.Kind {
 	case "orbit":
 		// The body follows the hand: the eye goes the other way.
-		return c.Orbit(-g.DX/height*turnAcross, g.DY/height*turnAcross)
+		return about(c, c.Orbit(-g.DX/height*turnAcross, g.DY/height*turnAcross), at)
 	case "pan":
 		return c.Pan(g.DX/height, g.DY/height)
 	}
@@ -64,6 +64,26 @@ func (g Gesture) Move(c render.Camera, height float64, at r3.Vec, diagonal float
 		factor = max(factor, min(1, d/(zoomRange[1]*diagonal)))
 	}
 	return c.Zoom(factor, at)
+}
+
+// about returns the turned camera, moved so that the place at appears where it did before the turn.
+func about(before, turned render.Camera, at r3.Vec) render.Camera {
+	old, now := axes(before), axes(turned)
+	d := at.Sub(before.From)
+	from := at
+	for i := range old {
+		from = from.AddScaled(-d.Dot(old[i]), now[i])
+	}
+	turned.At = turned.At.Add(from.Sub(turned.From))
+	turned.From = from
+	return turned
+}
+
+// axes returns the camera's unit vectors to the right, up and forward.
+func axes(c render.Camera) [3]r3.Vec {
+	forward := c.At.Sub(c.From).Unit()
+	right := forward.Cross(c.Up).Unit()
+	return [3]r3.Vec{right, right.Cross(forward), forward}
 }
 
 // shownAround is the height that Toward shows around a point, in diagonals of the run: enough to recognise the place.
@@ -109,6 +129,12 @@ func (s Size) free() (x, y, w, h float64) {
 		y, h = 0, s.Height
 	}
 	return x, y, max(w, 1), max(h, 1)
+}
+
+// Middle returns the middle of the stage's free part [CSS pixels].
+func (s Size) Middle() (x, y float64) {
+	dx, dy, _, _ := s.free()
+	return s.Width/2 + dx, s.Height/2 + dy
 }
 
 // Fit returns the camera, with its direction kept, from where the whole run fits into the free part of the stage.

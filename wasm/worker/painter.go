@@ -35,6 +35,7 @@ type painter struct {
 	rough  bool      // what is shown is no still frame of the present scene
 	hand   time.Time // of the last movement
 	flight *flight
+	lines  streamlines
 	flow   time.Time // of the last frame of the moving texture; zero for none
 	phase  float64
 
@@ -259,9 +260,10 @@ func (p *painter) tellLink() {
 	p.post(session.Reply{Event: "view", Body: map[string]string{"link": link}}, nil, js.Undefined())
 }
 
-// anchor is the place that a series of zooms keeps under the pointer.
+// anchor is the place that a series of gestures of one kind keeps where it is on the stage.
 type anchor struct {
-	x, y float64
+	kind string
+	x, y float64 // on the stage
 	at   r3.Vec
 	time time.Time
 }

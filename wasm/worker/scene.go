@@ -36,7 +36,7 @@ func (p *painter) sceneOf() *render.Scene {
 	case "texture":
 		s.Flow = render.Texture
 	case "lines":
-		s.Flow = render.FlowLines
+		s.Flow, s.Streamlines = render.FlowLines, p.streamlines()
 	default:
 		s.Flow = render.NoFlow
 	}

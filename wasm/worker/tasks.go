@@ -49,7 +49,7 @@ func (p *painter) settled(r session.Request, _ js.Value) (any, error) {
 	return nil, nil
 }
 
-// sameAnchor is the time within which zooms at one place of the screen belong together.
+// sameAnchor is the time within which zooms at one place of the screen, or steps of an orbit, belong together.
 const sameAnchor = 500 * time.Millisecond
 
 func (p *painter) gesture(r session.Request, _ js.Value) (any, error) {
@@ -59,15 +59,14 @@ func (p *painter) gesture(r session.Request, _ js.Value) (any, error) {
 	}
 	p.flight = nil
 	p.hand = time.Now()
-	if g.Kind == "zoom" {
-		near := math.Abs(g.X-p.anchor.x) < 2 && math.Abs(g.Y-p.anchor.y) < 2
-		if !near || time.Since(p.anchor.time) > sameAnchor {
-			p.anchor = anchor{x: g.X, y: g.Y, at: p.under(g.X, g.Y)}
-		}
-		p.anchor.time = time.Now()
-	} else {
-		p.anchor = anchor{}
+	if g.Kind != "zoom" { // an orbit turns about what is in the middle
+		g.X, g.Y = p.size.Middle()
 	}
+	near := math.Abs(g.X-p.anchor.x) < 2 && math.Abs(g.Y-p.anchor.y) < 2
+	if g.Kind != p.anchor.kind || !near || time.Since(p.anchor.time) > sameAnchor {
+		p.anchor = anchor{kind: g.Kind, x: g.X, y: g.Y, at: p.under(g.X, g.Y)}
+	}
+	p.anchor.time = time.Now()
 	p.point(g.Move(p.view.Camera(), p.size.Height, p.anchor.at, p.field.Diagonal()))
 	return nil, nil
 }
