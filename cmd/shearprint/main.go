@@ -10,7 +10,6 @@ import (
 
 func main() {
 	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt)
-	code := run(ctx, os.Args[1:], os.Stdout, os.Stderr)
-	stop()
-	os.Exit(code)
+	context.AfterFunc(ctx, stop) // a second Ctrl-C ends at once
+	os.Exit(run(ctx, os.Args[1:], os.Stdout, os.Stderr))
 }
