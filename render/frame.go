@@ -365,7 +365,7 @@ func (r *Renderer) layers(s *Scene, sm smear, flow bool, from, to int) {
 	for i, x := range s.Theme.palette(s.Quantity.of(s.Field)).table(r.low, r.high, s.Bands, c.none) {
 		l.Table[i] = x
 	}
-	l.Curve = contrastCurve()
+	l.Curve = contrastCurve(flow)
 	l.Back = [4]uint8{c.back[0], c.back[1], c.back[2], 255}
 	if s.Transparent {
 		l.Back = [4]uint8{}

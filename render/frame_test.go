@@ -159,12 +159,12 @@ func TestLayersMixToTheFrame(t *testing.T) {
 				a = min(max(math.Floor(a), 0), 255)
 				light := math.Floor(float64(l.Shade[i]) * float64(l.Curve[int(a)]) / 128)
 				for c := range 3 {
-					out := min(float64(l.Table[l.Scalar[i]][c])*light/255, 255)
+					out := math.Floor(min(float64(l.Table[l.Scalar[i]][c])*light/255, 255))
 					if l.Mask[i] == 0 {
 						out = float64(l.Back[c])
 					}
 					o := 4 * (y*fr.W + x)
-					out = float64(l.Overlay[o+c]) + out*float64(255-l.Overlay[o+3])/255
+					out = float64(l.Overlay[o+c]) + math.Floor(out*float64(255-l.Overlay[o+3])/255)
 					if d := math.Abs(out - float64(fr.Pix[o+c])); d > 2 {
 						t.Fatalf("quality %d: pixel %d,%d channel %d is %d, the formula gives %.1f", q, x, y, c, fr.Pix[o+c], out)
 					}

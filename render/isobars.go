@@ -34,7 +34,7 @@ func (r *Renderer) isobars(s *Scene, c *canvas, factor int, taken []area) []area
 			if k == 0 {
 				half = 0.9 * pixels
 			}
-			cover := coverage(off-half, 0.62)
+			cover := coverage(off-half, 0.75)
 			if cover == 0 {
 				continue
 			}
@@ -45,7 +45,7 @@ func (r *Renderer) isobars(s *Scene, c *canvas, factor int, taken []area) []area
 			for dy := range factor {
 				for dx := range factor {
 					if px, py := x*factor+dx, y*factor+dy; px < c.w && py < c.h {
-						c.blend(py*c.w+px, col.ink, cover)
+						c.blend(py*c.w+px, col.isobar, cover)
 					}
 				}
 			}

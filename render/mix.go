@@ -45,8 +45,13 @@ const (
 
 // contrastCurve returns the texture's effect on light, 128 for the palette's own colour. The curve flattens the extremes: of a normal
 // distribution it makes nearly an even one, which has the most contrast for its range.
-func contrastCurve() (curve [256]uint8) {
+// Without texture light is as it is.
+func contrastCurve(texture bool) (curve [256]uint8) {
 	for i := range curve {
+		if !texture {
+			curve[i] = 128
+			continue
+		}
 		t := (float64(i) - 128) * textureSpread / 127 * 1.5
 		s := t / math.Sqrt(1+float64(t*t))
 		curve[i] = uint8(128*(textureLight+float64(textureContrast*s)) + 0.5)

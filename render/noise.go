@@ -3,10 +3,15 @@ package render
 import "math"
 
 // cellPixels is the size of the noise's cells on the frame [pixels]: fine enough for the texture to show the direction
-// within a few pixels of a critical point, coarse enough that a pixel's middle stands for its cell when the body turns.
-const cellPixels = 1.5
+// within a few pixels of a critical point; coarse enough that a pixel's middle stands for its cell when the body turns (at
+// 1.5 the texture's correlation between frames of a turntable falls to 0.7, at 2 it is 0.85).
+const cellPixels = 2.0
 
-// solidNoise returns white noise of variance one at a place of the body, for cells of the wanted size. The noise is a
+// noiseSize is the deviation of the noise. Smeared along a streamline, cells of two pixels make 1.45 times the contrast
+// of independent pixels, which a deviation of one would stand for.
+const noiseSize = 0.69
+
+// solidNoise returns noise of deviation noiseSize at a place of the body, for cells of the wanted size. The noise is a
 // lattice of cells in space, so that it rides with the surface; two octaves of cells, the next smaller and the next larger
 // than wanted, are blended so that neither appears or leaves abruptly.
 func solidNoise(x, y, z, wanted float64) float32 {
@@ -23,7 +28,7 @@ func solidNoise(x, y, z, wanted float64) float32 {
 	const scale = 2 * root3 / (1 << 24)
 	s := 1 - t
 	v := float64(s*(float64(a)*scale-root3)) + float64(t*(float64(b)*scale-root3))
-	return float32(v / math.Sqrt(float64(s*s)+float64(t*t)))
+	return float32(noiseSize * v / math.Sqrt(float64(s*s)+float64(t*t)))
 }
 
 // cellHash returns 24 bits that seem random for a cell of an octave.

@@ -72,16 +72,18 @@ func (p palette) color(x, lo, hi float64) rgb {
 // table is a palette ready for mixing: entry 0 is for the surface without a value, 1..255 are lo..hi.
 type table [256]rgb
 
-// table returns the colours between the limits, in steps if bands > 0.
+// table returns the colours between the limits; if bands > 0 in about so many steps of a round width, of which one begins
+// at 0.
 func (p palette) table(lo, hi float64, bands int, none rgb) *table {
 	var t table
 	t[0] = none
 	for i := 1; i < 256; i++ {
-		s := float64(i-1) / 254
+		x := lo + float64(float64(i-1)/254*(hi-lo))
 		if bands > 0 {
-			s = (math.Floor(min(s*float64(bands), float64(bands)-0.5)) + 0.5) / float64(bands)
+			step := niceStep((hi - lo) / float64(bands))
+			x = (math.Floor(x/step) + 0.5) * step
 		}
-		t[i] = p.color(lo+float64(s*(hi-lo)), lo, hi)
+		t[i] = p.color(x, lo, hi)
 	}
 	return &t
 }
@@ -108,16 +110,17 @@ type colors struct {
 	line            rgb // neutral lines
 	stream          rgb // streamlines
 	edge            rgb // outline and creases of the body
+	isobar          rgb
 }
 
 var themeColors = [...]colors{
 	Light: {back: rgb{250, 250, 248}, ink: rgb{24, 28, 34}, halo: rgb{255, 255, 255}, none: rgb{205, 207, 208},
-		separation: rgb{122, 12, 60}, attachment: rgb{0, 84, 66}, line: rgb{52, 56, 64}, stream: rgb{30, 34, 44}, edge: rgb{40, 44, 50}},
+		separation: rgb{122, 12, 60}, attachment: rgb{0, 84, 66}, line: rgb{52, 56, 64}, stream: rgb{30, 34, 44}, edge: rgb{40, 44, 50}, isobar: rgb{20, 22, 28}},
 	Dark: {back: rgb{21, 24, 29}, ink: rgb{236, 238, 240}, halo: rgb{12, 14, 18}, none: rgb{120, 124, 130},
 		separation: rgb{255, 128, 166}, attachment: rgb{120, 240, 186}, line: rgb{214, 218, 224}, stream: rgb{240, 242, 245},
-		edge: rgb{10, 11, 13}},
+		edge: rgb{10, 11, 13}, isobar: rgb{20, 22, 28}},
 	Print: {back: rgb{255, 255, 255}, ink: rgb{0, 0, 0}, halo: rgb{255, 255, 255}, none: rgb{228, 228, 228},
-		separation: rgb{0, 0, 0}, attachment: rgb{0, 0, 0}, line: rgb{60, 60, 60}, stream: rgb{0, 0, 0}, edge: rgb{60, 60, 60}},
+		separation: rgb{0, 0, 0}, attachment: rgb{0, 0, 0}, line: rgb{60, 60, 60}, stream: rgb{0, 0, 0}, edge: rgb{60, 60, 60}, isobar: rgb{0, 0, 0}},
 }
 
 func (t Theme) colors() *colors { return &themeColors[min(t, Print)] }

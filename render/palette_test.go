@@ -177,15 +177,30 @@ func TestThemesAreLegible(t *testing.T) {
 	}
 }
 
-func TestBandsGiveThatManyColours(t *testing.T) {
-	for _, n := range []int{1, 2, 7, 12} {
-		colours := map[[3]uint8]bool{}
-		tab := Light.palette(Pressure).table(-3, 5, n, rgb{1, 2, 3})
-		for _, c := range tab[1:] {
-			colours[c] = true
+// Bands have a round width, and 0 is the border between two of them.
+func TestBandsAreRound(t *testing.T) {
+	p := Light.palette(Cp)
+	for _, c := range []struct {
+		lo, hi float64
+		bands  int
+		step   float64
+	}{{-1, 1, 10, 0.2}, {-1.5, 0.9, 12, 0.2}, {-0.5, 0.7, 30, 0.05}, {-3, 5, 1, 10}} {
+		tab := p.table(c.lo, c.hi, c.bands, rgb{1, 2, 3})
+		if tab[0] != (rgb{1, 2, 3}) {
+			t.Errorf("entry 0 is %v", tab[0])
 		}
-		if len(colours) != n || tab[0] != (rgb{1, 2, 3}) {
-			t.Errorf("%d bands have %d colours", n, len(colours))
+		for i := 1; i < 255; i++ {
+			x, y := c.lo+float64(i-1)/254*(c.hi-c.lo), c.lo+float64(i)/254*(c.hi-c.lo)
+			if border := math.Floor(x/c.step) != math.Floor(y/c.step); border != (tab[i] != tab[i+1]) {
+				// Bands beyond the limits have the colour of the end, and far ones may round to the same colour.
+				if !border {
+					t.Errorf("%g..%g: the colour changes between %g and %g", c.lo, c.hi, x, y)
+				}
+			}
+		}
+		zero := 1 + int(-c.lo/(c.hi-c.lo)*254)
+		if tab[max(zero-1, 1)] == tab[min(zero+2, 255)] {
+			t.Errorf("%g..%g: no border at 0", c.lo, c.hi)
 		}
 	}
 }
