@@ -192,7 +192,7 @@ func (in *Inspection) verdict() string {
 		words += " " + count(repairs, "kind of fault was", "kinds of faults were") + " mended."
 	}
 	if doubts > 0 {
-		words += " " + count(doubts, "matter is", "matters are") + " doubtful: results that touch them deserve a second look."
+		words += " " + count(doubts, "matter is", "matters are") + " doubtful; what rests on that deserves a second look."
 	}
 	return words
 }

@@ -82,18 +82,21 @@ type LoopError struct{ error }
 // Unwrap returns the reason.
 func (e *LoopError) Unwrap() error { return e.error }
 
+// fullTurn [degrees] is the scale of the angles along a loop.
+const fullTurn = 360
+
 // WriteText writes the reading in a few sentences.
 func (l *Loop) WriteText(w io.Writer) error {
 	s := &sheet{w: w}
 	s.title("a closed loop on the surface", l.Run)
 	s.line("")
 	s.line("  length       %s", with(l.Length, l.Run.LengthUnit))
-	s.line("  tau turns    %.4g degrees against parallel transport", float64(l.Turn))
+	s.line("  tau turns    %.4g degrees against parallel transport", float64(tidy(l.Turn, fullTurn)))
 	if !l.Bounds {
 		s.para("  ?            ", l.Note)
 		return s.err
 	}
-	s.line("  curvature    %.4g degrees on the left of the loop", float64(l.Curvature))
+	s.line("  curvature    %.4g degrees on the left of the loop", float64(tidy(l.Curvature, fullTurn)))
 	s.line("  index        %s", num(l.Index))
 	inside := "no critical point"
 	if len(l.Inside) > 0 {

@@ -90,8 +90,8 @@ func (l *Ledger) write(s *sheet) {
 	rows = append(rows, []string{"sum of indices", "", "", signed(float64(l.IndexSum))},
 		[]string{"demanded", "", "", signed(float64(l.Expected))})
 	s.table(rows)
-	s.para("  ", l.Rule)
 	if len(l.Parts) < 2 {
+		s.para("  ", l.Rule)
 		return
 	}
 	parts := [][]string{{"part", "nodes", "foci", "saddles", "half", "sum", "demanded", "verdict"}}
@@ -104,6 +104,9 @@ func (l *Ledger) write(s *sheet) {
 			fmt.Sprint(p.HalfNodes + p.HalfSaddles + p.HalfDegenerate), num(p.IndexSum), num(p.Expected), verdict})
 	}
 	s.table(limited(parts))
+	for _, p := range l.Parts[:min(len(l.Parts), longestTable)] {
+		s.para(fmt.Sprintf("  part %d: ", p.Part), p.Rule)
+	}
 }
 
 func (t *Topology) writePoints(s *sheet) {
