@@ -205,7 +205,9 @@ func (v View) Encode() string {
 }
 
 // number leaves out the plus of an exponent, which in an address is a blank.
-func number(x float64) string { return strings.Replace(strconv.FormatFloat(x, 'g', digits, 64), "e+", "e", 1) }
+func number(x float64) string {
+	return strings.Replace(strconv.FormatFloat(x, 'g', digits, 64), "e+", "e", 1)
+}
 
 func point(p [3]float64) string { return number(p[0]) + "," + number(p[1]) + "," + number(p[2]) }
 

@@ -30,6 +30,7 @@ export class Ledger {
     this.#all = null;
     this.#rule.textContent = "";
     this.#verdict.textContent = "";
+    this.#showDoubts([]);
     this.#range.value = 0;
     this.#range.disabled = true;
     this.#histogram.replaceChildren();
@@ -108,8 +109,16 @@ export class Ledger {
       : "The book does not balance: a point is missing, or one is too many.";
     this.#verdict.textContent = text;
     this.#verdict.classList.toggle("off", !l.balanced);
+    this.#showDoubts(topology.findings ?? []);
     this.#showFloor(this.floor);
     this.choose(this.#chosen);
+  }
+
+  #showDoubts(findings) {
+    const box = document.getElementById("doubts");
+    box.hidden = findings.length === 0;
+    box.firstElementChild.textContent = findings.length === 1 ? "One thing is in doubt" : `${findings.length} things are in doubt`;
+    box.lastElementChild.replaceChildren(...findings.map((f) => make("li", {}, f.text)));
   }
 
   #row(p) {
