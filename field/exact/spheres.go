@@ -91,7 +91,7 @@ var strain = [3]float64{0.8, 0.2, -1}
 func strainPoints() []Point {
 	kind := [3]Point{
 		{Type: "node", Sense: "separation", Index: 1},
-		{Type: "saddle", Sense: "attachment", Index: -1},
+		{Type: "saddle", Sense: "separation", Index: -1},
 		{Type: "node", Sense: "attachment", Index: 1},
 	}
 	axis := [3]r3.Vec{{X: 1}, {Y: 1}, {Z: 1}}
