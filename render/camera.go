@@ -98,7 +98,7 @@ func (c Camera) Zoom(factor float64, p r3.Vec) Camera {
 // FlyTo returns the camera at share t in [0, 1] of the way from c to d, with an even rate of zoom.
 func (c Camera) FlyTo(d Camera, t float64) Camera {
 	t = min(max(t, 0), 1)
-	t = t * t * (3 - 2*t)
+	t = float64(t * t * (3 - float64(2*t)))
 	a, b := c.From.Sub(c.At), d.From.Sub(d.At)
 	size := r3.Exp(float64((1-t)*r3.Log(max(a.Norm(), 1e-300))) + float64(t*r3.Log(max(b.Norm(), 1e-300))))
 	way := a.Unit().Lerp(b.Unit(), t).Unit()

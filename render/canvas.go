@@ -43,7 +43,7 @@ func (c *canvas) shape(x, y, reach float64, color rgb, alpha float64, distance f
 
 // coverage turns a signed distance into the share of a pixel that is covered, times alpha, in 255ths.
 func coverage(d, alpha float64) uint32 {
-	return uint32(min(max(0.5-d, 0), 1)*alpha*255 + 0.5)
+	return uint32(float64(min(max(0.5-d, 0), 1)*alpha*255) + 0.5)
 }
 
 // rect fills a rectangle with soft edges.
@@ -51,7 +51,7 @@ func (c *canvas) rect(x0, y0, x1, y1 float64, color rgb, alpha float64) {
 	share := func(i int, lo, hi float64) float64 { return min(max(min(float64(i+1), hi)-max(float64(i), lo), 0), 1) }
 	left, right := max(int(math.Floor(x0)), 0), min(int(math.Ceil(x1)), c.w)
 	for j := max(int(math.Floor(y0)), 0); j < min(int(math.Ceil(y1)), c.h); j++ {
-		row := share(j, y0, y1) * alpha * 255
+		row := float64(share(j, y0, y1) * alpha * 255)
 		for i := left; i < right; i++ {
 			k := row
 			if float64(i) < x0 || float64(i+1) > x1 {

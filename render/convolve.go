@@ -233,7 +233,7 @@ func (p *plate) streamline(t *tracer, s smear, channels, i, lo, hi int) {
 		t.acc[0][at] += float32(t.sum[0][k] * gain)
 		if channels == 3 {
 			const root2 = 1.41421356
-			a, b := float32(t.sum[1][k]*gain)*root2, float32(t.sum[2][k]*gain)*root2
+			a, b := float32(float32(t.sum[1][k]*gain)*root2), float32(float32(t.sum[2][k]*gain)*root2)
 			t.acc[1][at] += float32(a*t.cos[k]) + float32(b*t.sin[k])
 			t.acc[2][at] += float32(a*t.sin[k]) - float32(b*t.cos[k])
 		}
@@ -272,7 +272,7 @@ func (p *plate) walk(at []int32, i int, sign float32) int {
 	right, upper, lower := float32(w), float32(top), float32(p.bottom)
 	for k := range at {
 		d := p.dirs[i]
-		h := 0.5 * sign
+		h := float32(0.5 * sign)
 		mx, my := x+float32(h*d.x), y+float32(h*d.y)
 		if !(mx >= 0 && mx < right && my >= upper && my < lower) {
 			return k

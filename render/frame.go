@@ -236,7 +236,7 @@ func (s *Scene) scale() float64 {
 
 // resize returns the lens for a frame of k times the size.
 func (l Lens) resize(k float64) Lens {
-	l.cx, l.cy, l.focal = l.cx*k, l.cy*k, l.focal*k
+	l.cx, l.cy, l.focal = float64(l.cx*k), float64(l.cy*k), float64(l.focal*k)
 	return l
 }
 
@@ -268,7 +268,7 @@ func (r *Renderer) stage(ctx context.Context, j *job) error {
 		level = &b.coarse
 	}
 	start = f.Times.lap(&f.Times.Prepare, start)
-	sm := smear{half: max(int(math.Floor(kernelLength*j.pixels+0.5)), 2), animate: s.Animate}
+	sm := smear{half: max(int(math.Floor(float64(kernelLength*j.pixels)+0.5)), 2), animate: s.Animate}
 	sm.serve = 2 * sm.half
 	sm.soften, sm.enough = j.quality == Still, 2
 	if sm.soften {

@@ -57,11 +57,11 @@ func (p *plate) surfaceRow(b *body, l *level, lens *Lens, look *look, row int) {
 	lit := lights(b, lens)
 	base := row * p.w
 	inverseFocal := 1 / lens.focal
-	slopeY := (float64(p.top+row) + 0.5 - lens.cy) * inverseFocal
+	slopeY := float64((float64(p.top+row) + 0.5 - lens.cy) * inverseFocal)
 	// Below the lowest floor tau is an exact zero (field.ZeroFraction).
-	lowest := 1e-12 * b.field.MaxTau
+	lowest := float64(1e-12 * b.field.MaxTau)
 	fadeScale := 1 / max(look.floor, lowest, math.SmallestNonzeroFloat64)
-	cell := cellPixels * inverseFocal * look.pixels
+	cell := float64(cellPixels * inverseFocal * look.pixels)
 	rx, ry, rz := lens.right.X, lens.right.Y, lens.right.Z
 	ux, uy, uz := lens.up.X, lens.up.Y, lens.up.Z
 	fx, fy, fz := lens.forward.X, lens.forward.Y, lens.forward.Z
@@ -90,8 +90,8 @@ func (p *plate) surfaceRow(b *body, l *level, lens *Lens, look *look, row int) {
 			nx, ny, nz = b.creased(tri, b0, b1, b2)
 		}
 		inverse := 1 / math.Sqrt(float64(nx*nx)+float64(ny*ny)+float64(nz*nz)+1e-30)
-		facing := (float64(nx*lit.key.X) + float64(ny*lit.key.Y) + float64(nz*lit.key.Z)) * inverse
-		upward := (float64(nx*lit.sky.X) + float64(ny*lit.sky.Y) + float64(nz*lit.sky.Z)) * inverse
+		facing := float64((float64(nx*lit.key.X) + float64(ny*lit.key.Y) + float64(nz*lit.key.Z)) * inverse)
+		upward := float64((float64(nx*lit.sky.X) + float64(ny*lit.sky.Y) + float64(nz*lit.sky.Z)) * inverse)
 		k := ambientLight + skyLight/2 + float64(skyLight/2*upward)
 		if facing > 0 {
 			k += float64(keyLight * facing)
@@ -126,7 +126,7 @@ func (p *plate) surfaceRow(b *body, l *level, lens *Lens, look *look, row int) {
 		case w <= 0:
 			fade[x] = 0
 		default:
-			fade[x] = uint8(float64(255*w*w*(3-2*w)) + 0.5)
+			fade[x] = uint8(float64(255*w*w*(3-float64(2*w))) + 0.5)
 		}
 		noise[x] = solidNoise(
 			float64(b0*p0.X)+float64(b1*p1.X)+float64(b2*p2.X),

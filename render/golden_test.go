@@ -3,6 +3,7 @@ package render_test
 import (
 	"bytes"
 	"context"
+	"crypto/sha256"
 	"image"
 	"image/draw"
 	"image/png"
@@ -73,6 +74,7 @@ func TestGoldenPictures(t *testing.T) {
 			if err != nil {
 				t.Fatal(err)
 			}
+			t.Logf("%s %x", name, sha256.Sum256(got.Pix)) // to compare targets: these must be the same on all
 			compareGolden(t, filepath.Join("testdata", "golden", name), got)
 		}
 	}

@@ -4,9 +4,9 @@ import "math"
 
 // isobars draws lines of equal value, at round values, from the scalar plane; the line of 0 is heavier. It returns taken
 // with the labels' areas added.
-func (r *Renderer) isobars(s *Scene, c *canvas, factor int, taken []area) []area {
+func (r *Renderer) isobars(s *Scene, c *canvas, pixels float64, taken []area) []area {
 	p := &r.plate
-	pixels := s.scale()
+	factor := r.frame.Layers.Factor
 	col := s.Theme.colors()
 	step := niceStep((r.high - r.low) / float64(s.Isobars))
 	type spot struct {
@@ -25,14 +25,14 @@ func (r *Renderer) isobars(s *Scene, c *canvas, factor int, taken []area) []area
 			k := math.Floor(v/step + 0.5)
 			gx := slopeAt(p.scalar, p.steps, i, 1, stepRight)
 			gy := slopeAt(p.scalar, p.steps, i, p.w, stepDown)
-			g := math.Sqrt(float64(gx*gx)+float64(gy*gy)) * (1 / float64(factor)) // per frame pixel
+			g := float64(math.Sqrt(float64(gx*gx)+float64(gy*gy)) * (1 / float64(factor))) // per frame pixel
 			if g == 0 {
 				continue
 			}
 			off := math.Abs(v-float64(k*step)) / g
-			half := 0.45 * pixels
+			half := float64(0.45 * pixels)
 			if k == 0 {
-				half = 0.9 * pixels
+				half = float64(0.9 * pixels)
 			}
 			cover := coverage(off-half, 0.75)
 			if cover == 0 {
@@ -59,7 +59,7 @@ func (r *Renderer) isobars(s *Scene, c *canvas, factor int, taken []area) []area
 	}
 	// Labels: of each value the first free spots that are far from others of the same value.
 	last := map[int][]spot{}
-	h := r.small.size * 0.74
+	h := float64(r.small.size * 0.74)
 	for i := 0; i < len(spots); i += 7 {
 		q := spots[i]
 		text := tickText(float64(q.value)*step, step)

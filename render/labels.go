@@ -5,12 +5,6 @@ type area struct{ x0, y0, x1, y1 float64 }
 
 func (a area) meets(b area) bool { return a.x0 < b.x1 && b.x0 < a.x1 && a.y0 < b.y1 && b.y0 < a.y1 }
 
-// overlap returns the size of what two areas share.
-func (a area) overlap(b area) float64 {
-	w, h := min(a.x1, b.x1)-max(a.x0, b.x0), min(a.y1, b.y1)-max(a.y0, b.y0)
-	return max(w, 0) * max(h, 0)
-}
-
 // places are the positions of a label around its mark, the best first: direction and anchor.
 var places = [...]struct{ dx, dy float64 }{
 	{1, -1}, {1, 1}, {-1, -1}, {-1, 1}, {1, 0}, {-1, 0}, {0, -1}, {0, 1},
@@ -25,17 +19,18 @@ type label struct {
 }
 
 // placeLabels draws the labels where they cover neither one another nor a mark nor what is taken already. Earlier labels
-// have the better choice; one that finds no place is left out, since a heap of labels tells nothing.
-func (c *canvas) placeLabels(labels []label, taken []area, t *typist, col *colors, pixels float64) {
+// have the better choice; one that finds no place is left out, since a heap of labels tells nothing. It
+// returns what is taken: the given areas, the marks, and the labels' places.
+func (c *canvas) placeLabels(labels []label, taken []area, t *typist, col *colors, pixels float64) []area {
 	for _, l := range labels {
-		r := markSize * pixels
+		r := float64(markSize * pixels)
 		taken = append(taken, area{l.x - r, l.y - r, l.x + r, l.y + r})
 	}
 	for _, l := range labels {
-		w, h := t.set(l.text).advance, t.size*0.74
-		gap := 1.25 * markSize * pixels
+		w, h := t.set(l.text).advance, float64(t.size*0.74)
+		gap := float64(1.25 * markSize * pixels)
 		for _, p := range places {
-			x, y := l.x+p.dx*gap, l.y+p.dy*gap // the label's corner or side nearest to the mark
+			x, y := l.x+float64(p.dx*gap), l.y+float64(p.dy*gap) // the label's corner or side nearest to the mark
 			a := area{x, y, x + w, y + h}
 			switch {
 			case p.dx < 0:
@@ -57,11 +52,12 @@ func (c *canvas) placeLabels(labels []label, taken []area, t *typist, col *color
 				alpha = 0.75
 			}
 			c.text(t, l.text, a.x0, a.y1, 0, col.ink, col.halo, alpha)
-			pad := 1.5 * pixels
+			pad := float64(1.5 * pixels)
 			taken = append(taken, area{a.x0 - pad, a.y0 - pad, a.x1 + pad, a.y1 + pad})
 			break
 		}
 	}
+	return taken
 }
 
 func covered(a area, taken []area) bool {

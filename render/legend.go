@@ -38,9 +38,9 @@ type keyEntry struct {
 func (r *Renderer) furnitureAreas(s *Scene, c *canvas, pixels float64) []area {
 	l := layout{}
 	w, h := float64(c.w), float64(c.h)
-	m := margin * pixels
+	m := float64(margin * pixels)
 	k := r.small.size / 12.5 // small frames have smaller furniture
-	row := r.small.size * 1.45
+	row := float64(r.small.size * 1.45)
 	if q := s.Quantity.of(s.Field); q != Plain {
 		height := min(max(h*0.42, 60*k), 260*k)
 		l.ticks, l.step = ticks(r.low, r.high, int(height/(2.2*r.small.size)))
@@ -49,10 +49,10 @@ func (r *Renderer) furnitureAreas(s *Scene, c *canvas, pixels float64) []area {
 			wide = max(wide, r.small.set(tickText(t, l.step)).advance)
 		}
 		title := r.legendTitle(s)
-		wide = max(wide+barWidth*k+12*k, r.small.set(title).advance)
-		pad := 8 * k
-		l.legend = area{w - m - wide - 2*pad, h - m - height - row - 2*pad, w - m, h - m}
-		l.bar = area{l.legend.x0 + pad, l.legend.y0 + pad + row, l.legend.x0 + pad + barWidth*k, l.legend.y1 - pad}
+		wide = max(wide+float64(barWidth*k)+float64(12*k), r.small.set(title).advance)
+		pad := float64(8 * k)
+		l.legend = area{w - m - wide - float64(2*pad), h - m - height - row - float64(2*pad), w - m, h - m}
+		l.bar = area{l.legend.x0 + pad, l.legend.y0 + pad + row, l.legend.x0 + pad + float64(barWidth*k), l.legend.y1 - pad}
 	}
 	if h > 300*pixels && w > 420*pixels {
 		l.rows = r.keyEntries(s)
@@ -60,19 +60,19 @@ func (r *Renderer) furnitureAreas(s *Scene, c *canvas, pixels float64) []area {
 	if len(l.rows) > 0 || s.Title != "" {
 		wide := r.small.set(s.Title).advance
 		for _, e := range l.rows {
-			wide = max(wide, 40*k+r.small.set(e.text).advance)
+			wide = max(wide, float64(40*k)+r.small.set(e.text).advance)
 		}
 		lines := float64(len(l.rows))
 		if s.Title != "" {
 			lines++
 		}
-		l.key = area{m, m, m + wide + 20*k, m + lines*keyRow*k + 10*k}
+		l.key = area{m, m, m + wide + float64(20*k), m + float64(lines*keyRow*k) + float64(10*k)}
 	}
 	unit := r.lens.Pixel(r.lens.distance)
 	l.length = niceStep(scaleGoal * k * unit / 2)
 	l.bits = l.length / unit
-	l.scale = area{m, h - m - 2*row, m + max(l.bits, 3*axesSize*k), h - m}
-	l.scale.y0 -= 2.6 * axesSize * k
+	l.scale = area{m, h - m - float64(2*row), m + max(l.bits, 3*axesSize*k), h - m}
+	l.scale.y0 -= float64(2.6 * axesSize * k)
 	r.layout = l
 	return []area{l.legend, l.key, l.scale}
 }
@@ -135,20 +135,20 @@ func (r *Renderer) furniture(s *Scene, c *canvas, col *colors, pixels float64) {
 	}
 	if l.key.x1 > 0 {
 		c.rect(l.key.x0, l.key.y0, l.key.x1, l.key.y1, col.halo, panel)
-		y := l.key.y0 + 5*k
+		y := l.key.y0 + float64(5*k)
 		if s.Title != "" {
-			c.text(r.small, s.Title, l.key.x0+10*k, y+13*k, 0, col.ink, col.halo, 1)
-			y += keyRow * k
+			c.text(r.small, s.Title, l.key.x0+float64(10*k), y+float64(13*k), 0, col.ink, col.halo, 1)
+			y += float64(keyRow * k)
 		}
 		for _, e := range l.rows {
 			middle := y + keyRow*k/2
 			if e.mark != nil {
-				c.mark(e.mark, l.key.x0+22*k, middle, 1, col, 0.82*k)
+				c.mark(e.mark, l.key.x0+float64(22*k), middle, 1, col, 0.82*k)
 			} else {
-				c.line([]vertex{{l.key.x0 + 7*k, middle, 1, 1}, {l.key.x0 + 37*k, middle, 1, 1}}, e.line, col, k)
+				c.line([]vertex{{l.key.x0 + float64(7*k), middle, 1, 1}, {l.key.x0 + float64(37*k), middle, 1, 1}}, e.line, col, k)
 			}
-			c.text(r.small, e.text, l.key.x0+44*k, middle+4.4*k, 0, col.ink, col.halo, 1)
-			y += keyRow * k
+			c.text(r.small, e.text, l.key.x0+float64(44*k), middle+float64(4.4*k), 0, col.ink, col.halo, 1)
+			y += float64(keyRow * k)
 		}
 	}
 	r.drawScale(s, c, col, k)
@@ -158,38 +158,38 @@ func (r *Renderer) furniture(s *Scene, c *canvas, col *colors, pixels float64) {
 func (r *Renderer) drawLegend(s *Scene, c *canvas, col *colors, k float64) {
 	l := &r.layout
 	c.rect(l.legend.x0, l.legend.y0, l.legend.x1, l.legend.y1, col.halo, panel)
-	c.text(r.small, r.legendTitle(s), l.bar.x0, l.bar.y0-8*k, 0, col.ink, col.halo, 1)
-	c.rect(l.bar.x0-1.2*k, l.bar.y0-1.2*k, l.bar.x1+1.2*k, l.bar.y1+1.2*k, col.ink, 1)
+	c.text(r.small, r.legendTitle(s), l.bar.x0, l.bar.y0-float64(8*k), 0, col.ink, col.halo, 1)
+	c.rect(l.bar.x0-float64(1.2*k), l.bar.y0-float64(1.2*k), l.bar.x1+float64(1.2*k), l.bar.y1+float64(1.2*k), col.ink, 1)
 	for y := int(l.bar.y0); y < int(math.Ceil(l.bar.y1)); y++ {
 		t := (l.bar.y1 - float64(y) - 0.5) / (l.bar.y1 - l.bar.y0)
-		color := r.frame.Layers.Table[1+int(min(max(t, 0), 1)*254+0.5)]
+		color := r.frame.Layers.Table[1+int(float64(min(max(t, 0), 1)*254)+0.5)]
 		c.rect(l.bar.x0, max(float64(y), l.bar.y0), l.bar.x1, min(float64(y+1), l.bar.y1), color, 1)
 	}
 	for _, t := range l.ticks {
 		y := l.bar.y1 - float64((t-r.low)/(r.high-r.low)*(l.bar.y1-l.bar.y0))
-		c.rect(l.bar.x1, y-0.6*k, l.bar.x1+4.5*k, y+0.6*k, col.ink, 1)
-		c.text(r.small, tickText(t, l.step), l.bar.x1+7.5*k, y+0.36*r.small.size, 0, col.ink, col.halo, 1)
+		c.rect(l.bar.x1, y-float64(0.6*k), l.bar.x1+float64(4.5*k), y+float64(0.6*k), col.ink, 1)
+		c.text(r.small, tickText(t, l.step), l.bar.x1+float64(7.5*k), y+float64(0.36*r.small.size), 0, col.ink, col.halo, 1)
 	}
 }
 
 func (r *Renderer) drawScale(s *Scene, c *canvas, col *colors, k float64) {
 	l := &r.layout
-	x0, y := l.scale.x0, l.scale.y1-3*k
-	c.rect(x0-1.5*k, y-3.5*k, x0+l.bits+1.5*k, y+3.5*k, col.halo, 0.8)
-	c.rect(x0, y-1.2*k, x0+l.bits, y+1.2*k, col.ink, 1)
+	x0, y := l.scale.x0, l.scale.y1-float64(3*k)
+	c.rect(x0-float64(1.5*k), y-float64(3.5*k), x0+l.bits+float64(1.5*k), y+float64(3.5*k), col.halo, 0.8)
+	c.rect(x0, y-float64(1.2*k), x0+l.bits, y+float64(1.2*k), col.ink, 1)
 	for _, x := range [2]float64{x0, x0 + l.bits} {
-		c.rect(x-0.7*k, y-4*k, x+0.7*k, y+2*k, col.ink, 1)
+		c.rect(x-float64(0.7*k), y-float64(4*k), x+float64(0.7*k), y+float64(2*k), col.ink, 1)
 	}
 	text := tickText(l.length, l.length)
 	if u := s.Field.Units.Length; u != "" {
 		text += " " + u
 	}
-	c.text(r.small, text, x0+l.bits/2, y-7*k, 0.5, col.ink, col.halo, 1)
+	c.text(r.small, text, x0+l.bits/2, y-float64(7*k), 0.5, col.ink, col.halo, 1)
 }
 
 func (r *Renderer) drawAxes(c *canvas, col *colors, k float64) {
 	l := &r.layout
-	x, y := l.scale.x0+1.3*axesSize*k, l.scale.y0+1.25*axesSize*k
+	x, y := l.scale.x0+float64(1.3*axesSize*k), l.scale.y0+float64(1.25*axesSize*k)
 	axes := [3]struct {
 		name string
 		way  r3.Vec
@@ -204,13 +204,13 @@ func (r *Renderer) drawAxes(c *canvas, col *colors, k float64) {
 		}
 		drawn[far] = true
 		a := axes[far]
-		dx, dy := a.way.Dot(r.lens.right)*axesSize*k, -a.way.Dot(r.lens.up)*axesSize*k
+		dx, dy := float64(a.way.Dot(r.lens.right)*axesSize*k), float64(-a.way.Dot(r.lens.up)*axesSize*k)
 		arrow := []vertex{{x, y, 1, 1.6 * k}, {x + dx, y + dy, 1, 1.6 * k}}
 		c.strokes([][]vertex{arrow}, 1.2*k, col.halo, 0.8)
 		c.strokes([][]vertex{arrow}, 0, col.ink, 1)
 		if length := round(dx, dy); length > 0.25*axesSize*k {
 			s := 1 + 8*k/length
-			c.text(r.small, a.name, x+dx*s, y+dy*s+4*k, 0.5, col.ink, col.halo, 1)
+			c.text(r.small, a.name, x+float64(dx*s), y+float64(dy*s)+float64(4*k), 0.5, col.ink, col.halo, 1)
 		}
 	}
 }

@@ -27,7 +27,7 @@ func (c *colors) ofLine(s Sense) rgb {
 // line draws one line: its halo below, its core above.
 func (c *canvas) line(curve []vertex, l *Line, col *colors, pixels float64) {
 	style := lineStyles[min(l.Sense, SeparationSense)]
-	width := style.width * pixels
+	width := float64(style.width * pixels)
 	if l.Chosen {
 		width *= 1.6
 	}
@@ -71,7 +71,7 @@ func (c *canvas) comet(curve []vertex, col *colors, pixels float64) {
 	}
 	for i := range curve {
 		s := at[i] / max(total, 1e-9)
-		curve[i].width = (tail + float64((head-tail)*s*s)) * pixels
+		curve[i].width = float64((tail + float64((head-tail)*s*s)) * pixels)
 	}
 	c.strokes([][]vertex{curve}, 0.7*pixels, col.halo, 0.7)
 	c.strokes([][]vertex{curve}, 0, col.stream, 0.95)

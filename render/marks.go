@@ -24,8 +24,8 @@ var outlines = [...]outline{
 	NodeMark:       func(dx, dy, r float64) float64 { return round(dx, dy) - r },
 	FocusMark:      drop,
 	SaddleMark:     star,
-	DegenerateMark: func(dx, dy, r float64) float64 { return max(math.Abs(dx), math.Abs(dy)) - 0.85*r },
-	ProbeMark:      func(dx, dy, r float64) float64 { return round(dx, dy) - 0.55*r },
+	DegenerateMark: func(dx, dy, r float64) float64 { return max(math.Abs(dx), math.Abs(dy)) - float64(0.85*r) },
+	ProbeMark:      func(dx, dy, r float64) float64 { return round(dx, dy) - float64(0.55*r) },
 }
 
 // star has four points along the diagonals and hollow flanks: four arcs of circles, like the streamlines at a saddle.
@@ -34,21 +34,21 @@ func star(dx, dy, r float64) float64 {
 	x, y := (math.Abs(dx+dy))*math.Sqrt2/2, (math.Abs(dx-dy))*math.Sqrt2/2
 	// Inside where farther than flank*r from the corner circle's middle at (c, c).
 	c := flank + 0.35
-	d := flank*r - round(x-c*r, y-c*r)
-	return max(d, max(x, y)-tip*r)
+	d := float64(flank*r) - round(x-float64(c*r), y-float64(c*r))
+	return max(d, max(x, y)-float64(tip*r))
 }
 
-// drop is a disc with a curled tail: two arms that turn, as the streamlines of a focus do.
+// drop is a disc with two curled arms, which turn as the streamlines of a focus do.
 func drop(dx, dy, r float64) float64 {
-	d := round(dx, dy) - 0.72*r
+	d := round(dx, dy) - float64(0.84*r)
 	// Each arm is half a circle of radius 0.62 r, fading in width.
 	for _, sign := range [2]float64{1, -1} {
-		x, y := dx*sign-0.72*r, dy*sign
+		x, y := float64(dx*sign)-float64(0.84*r), float64(dy*sign)
 		if y < 0 {
-			arm := math.Abs(round(x, y)-0.62*r) - 0.22*r
+			arm := math.Abs(round(x, y)-float64(0.62*r)) - float64(0.22*r)
 			d = min(d, arm)
 		} else {
-			d = min(d, round(x-0.62*r, y)-0.22*r)
+			d = min(d, round(x-float64(0.62*r), y)-float64(0.22*r))
 		}
 	}
 	return d
@@ -56,7 +56,7 @@ func drop(dx, dy, r float64) float64 {
 
 // mark draws a critical point. Filled means separation, hollow attachment; a neutral mark is filled on its left half.
 func (c *canvas) mark(m *Mark, x, y, seen float64, col *colors, pixels float64) {
-	r := markSize * pixels
+	r := float64(markSize * pixels)
 	if m.Weak {
 		r *= 0.72
 	}
@@ -65,14 +65,14 @@ func (c *canvas) mark(m *Mark, x, y, seen float64, col *colors, pixels float64) 
 	if m.Sense == NeutralSense {
 		color = col.line
 	}
-	reach := 2*r + 3*pixels
-	border := 1.7 * pixels
+	reach := float64(2*r) + float64(3*pixels)
+	border := float64(1.5 * pixels)
 	if m.Chosen {
-		ring := func(dx, dy float64) float64 { return math.Abs(round(dx, dy)-2*r) - 1.1*pixels }
-		c.shape(x, y, reach+r, col.halo, 0.9*seen, func(dx, dy float64) float64 { return ring(dx, dy) - 1.2*pixels })
+		ring := func(dx, dy float64) float64 { return math.Abs(round(dx, dy)-float64(2*r)) - float64(1.1*pixels) }
+		c.shape(x, y, reach+r, col.halo, 0.9*seen, func(dx, dy float64) float64 { return ring(dx, dy) - float64(1.2*pixels) })
 		c.shape(x, y, reach+r, color, seen, ring)
 	}
-	c.shape(x, y, reach, col.halo, 0.95*seen, func(dx, dy float64) float64 { return form(dx, dy, r) - 1.4*pixels })
+	c.shape(x, y, reach, col.halo, 0.95*seen, func(dx, dy float64) float64 { return form(dx, dy, r) - float64(1.4*pixels) })
 	c.shape(x, y, reach, color, seen, func(dx, dy float64) float64 { return form(dx, dy, r) })
 	if m.Sense == SeparationSense {
 		return
@@ -88,8 +88,8 @@ func (c *canvas) mark(m *Mark, x, y, seen float64, col *colors, pixels float64) 
 
 // hint draws a point that is hidden behind the surface: a faint ring of its size, nothing that could be taken for a mark.
 func (c *canvas) hint(x, y float64, col *colors, pixels float64) {
-	r := markSize * 0.8 * pixels
-	ring := func(dx, dy float64) float64 { return math.Abs(round(dx, dy)-r) - 0.5*pixels }
-	c.shape(x, y, r+2*pixels, col.halo, 0.35, func(dx, dy float64) float64 { return ring(dx, dy) - 0.8*pixels })
-	c.shape(x, y, r+2*pixels, col.line, 0.4, ring)
+	r := float64(markSize * 0.8 * pixels)
+	ring := func(dx, dy float64) float64 { return math.Abs(round(dx, dy)-r) - float64(0.5*pixels) }
+	c.shape(x, y, r+float64(2*pixels), col.halo, 0.35, func(dx, dy float64) float64 { return ring(dx, dy) - float64(0.8*pixels) })
+	c.shape(x, y, r+float64(2*pixels), col.line, 0.4, ring)
 }

@@ -52,9 +52,9 @@ func contrastCurve(texture bool) (curve [256]uint8) {
 			curve[i] = 128
 			continue
 		}
-		t := (float64(i) - 128) * textureSpread / 127 * 1.5
+		t := float64((float64(i) - 128) * textureSpread / 127 * 1.5)
 		s := t / math.Sqrt(1+float64(t*t))
-		curve[i] = uint8(128*(textureLight+float64(textureContrast*s)) + 0.5)
+		curve[i] = uint8(float64(128*(textureLight+float64(textureContrast*s))) + 0.5)
 	}
 	return curve
 }
@@ -94,7 +94,7 @@ type mixer struct {
 
 func newMixer(l *Layers, phase float64) mixer {
 	s, c := r3.SinCos(2 * math.Pi * (phase - math.Floor(phase)))
-	m := mixer{l: l, cos: int32(math.Floor(c*65536 + 0.5)), sin: int32(math.Floor(s*65536 + 0.5))}
+	m := mixer{l: l, cos: int32(math.Floor(float64(c*65536) + 0.5)), sin: int32(math.Floor(float64(s*65536) + 0.5))}
 	for i, x := range l.Curve {
 		m.curve[i] = int32(x)
 	}

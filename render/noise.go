@@ -20,14 +20,14 @@ func solidNoise(x, y, z, wanted float64) float32 {
 	octave := min(max(int(bits>>52&0x7ff)-1023, -400), 400)
 	t := math.Float64frombits(bits&(1<<52-1)|1023<<52) - 1
 	inverse := math.Float64frombits(uint64(1023-octave) << 52)
-	x, y, z = x*inverse, y*inverse, z*inverse
+	x, y, z = float64(x*inverse), float64(y*inverse), float64(z*inverse)
 	a := cellHash(int64(math.Floor(x)), int64(math.Floor(y)), int64(math.Floor(z)), uint64(octave))
 	b := cellHash(int64(math.Floor(x/2)), int64(math.Floor(y/2)), int64(math.Floor(z/2)), uint64(octave+1))
 	// Even distributions on [-sqrt 3, sqrt 3] have variance one.
 	const root3 = 1.7320508075688772
 	const scale = 2 * root3 / (1 << 24)
 	s := 1 - t
-	v := float64(s*(float64(a)*scale-root3)) + float64(t*(float64(b)*scale-root3))
+	v := float64(s*(float64(float64(a)*scale)-root3)) + float64(t*(float64(float64(b)*scale)-root3))
 	return float32(noiseSize * v / math.Sqrt(float64(s*s)+float64(t*t)))
 }
 

@@ -53,7 +53,7 @@ func (c lab) toLinear() linear {
 		c.l - float64(.0894841775*c.a) - float64(1.2914855480*c.b),
 	}
 	for i, x := range m {
-		m[i] = x * x * x
+		m[i] = float64(x * x * x)
 	}
 	return times(&okInverse, m)
 }
@@ -69,7 +69,7 @@ func cbrt(x float64) float64 {
 	_, e := math.Frexp(x)
 	y := math.Ldexp(1, e/3)
 	for range 8 { // from within a factor of two, quadratically, to the last bit but one
-		y = (2*y + x/float64(y*y)) / 3
+		y = (float64(2*y) + x/float64(y*y)) / 3
 	}
 	return y
 }
@@ -80,7 +80,7 @@ func encode(x float64) uint8 {
 	if x <= 0.0031308 {
 		x *= 12.92
 	} else {
-		x = 1.055*pow5of12(x) - 0.055
+		x = float64(1.055*pow5of12(x)) - 0.055
 	}
 	return uint8(float64(x*255) + 0.5)
 }
@@ -114,7 +114,7 @@ func (c lab) rgb() rgb {
 				hi = mid
 			}
 		}
-		c.a, c.b = c.a*lo, c.b*lo
+		c.a, c.b = float64(c.a*lo), float64(c.b*lo)
 	}
 	l := c.toLinear()
 	return rgb{encode(l[0]), encode(l[1]), encode(l[2])}

@@ -10,14 +10,15 @@ import (
 func (r *Renderer) overlay(ctx context.Context, s *Scene, c *canvas, factor float64) error {
 	col := s.Theme.colors()
 	pixels := s.scale()
+	pixels *= smallFrame(c.w, c.h, pixels)
 	sight := r.sight(factor)
-	r.setType(pixels * smallFrame(c.w, c.h, pixels))
+	r.setType(pixels)
 	var taken []area
 	if !s.Bare {
 		taken = r.furnitureAreas(s, c, pixels)
 	}
 	if s.Isobars > 0 && s.Quantity.of(s.Field) != Plain {
-		taken = r.isobars(s, c, int(factor), taken)
+		taken = r.isobars(s, c, pixels, taken)
 	}
 	r.edges(c, sight, col, pixels)
 	for _, locs := range s.Streamlines {
@@ -54,7 +55,7 @@ func (r *Renderer) overlay(ctx context.Context, s *Scene, c *canvas, factor floa
 	return ctx.Err()
 }
 
-// smallFrame shrinks type on frames that are small, down to what can just be read.
+// smallFrame shrinks type, marks and lines on frames that are small, down to what can just be read.
 func smallFrame(w, h int, pixels float64) float64 {
 	return min(max(float64(min(w, h))/(460*pixels), 0.72), 1)
 }

@@ -24,7 +24,7 @@ var (
 
 // at returns the colour at t in [0, 1] along the spine.
 func (s spine) at(t float64) lab {
-	t = min(max(t, 0), 1) * float64(len(s)-1)
+	t = float64(min(max(t, 0), 1) * float64(len(s)-1))
 	i := min(int(t), len(s)-2)
 	t -= float64(i)
 	mix := func(a, b float64) float64 { return a + float64(t*(b-a)) }
@@ -81,7 +81,7 @@ func (p palette) table(lo, hi float64, bands int, none rgb) *table {
 		x := lo + float64(float64(i-1)/254*(hi-lo))
 		if bands > 0 {
 			step := niceStep((hi - lo) / float64(bands))
-			x = (math.Floor(x/step) + 0.5) * step
+			x = float64((math.Floor(x/step) + 0.5) * step)
 		}
 		t[i] = p.color(x, lo, hi)
 	}

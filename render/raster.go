@@ -54,7 +54,7 @@ type raster struct {
 
 // project fills spots with the places on the frame of the vertices used[from:to], or from..to where used is nil.
 func project(b *body, used []int32, l *Lens, zero float64, spots []spot, from, to int) {
-	nearest := nearShare * l.distance
+	nearest := float64(nearShare * l.distance)
 	for i := from; i < to; i++ {
 		i := i
 		if used != nil {

@@ -34,7 +34,7 @@ func (s *sight) see(p r3.Vec) (x, y, seen float64, inside bool) {
 	}
 	// The farthest surface among the pixels around: a place on the surface is no farther than that, give or take what the
 	// surface falls away within a pixel.
-	pixel := s.lens.Pixel(z) * s.factor
+	pixel := float64(s.lens.Pixel(z) * s.factor)
 	farthest, nearest := math.Inf(-1), math.Inf(1)
 	for dj := max(j-1, 0); dj <= min(j+1, s.p.bottom-s.p.top-1); dj++ {
 		for di := max(i-1, 0); di <= min(i+1, s.p.w-1); di++ {
@@ -51,7 +51,7 @@ func (s *sight) see(p r3.Vec) (x, y, seen float64, inside bool) {
 		}
 	}
 	if math.IsInf(farthest, 1) { // beside a silhouette
-		farthest = nearest + 6*pixel
+		farthest = nearest + float64(6*pixel)
 		if math.IsInf(nearest, 1) {
 			return x, y, 1, true
 		}

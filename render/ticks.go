@@ -20,16 +20,16 @@ func niceStep(x float64) float64 {
 	}
 	for _, k := range [...]float64{1, 2, 5} {
 		if power*k >= x*(1-1e-9) {
-			return power * k
+			return float64(power * k)
 		}
 	}
-	return power * 10
+	return float64(power * 10)
 }
 
 // ticks returns round values within lo..hi, about count of them, and their distance.
 func ticks(lo, hi float64, count int) (values []float64, step float64) {
 	step = niceStep((hi - lo) / float64(max(count, 1)))
-	for k := math.Ceil(lo/step - 1e-9); k*step <= hi+1e-9*step && len(values) < 100; k++ {
+	for k := math.Ceil(lo/step - 1e-9); k*step <= hi+float64(1e-9*step) && len(values) < 100; k++ {
 		values = append(values, k*step)
 	}
 	return values, step

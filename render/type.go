@@ -94,7 +94,7 @@ type anchor float64
 // text draws a line of type with its base line at y.
 func (c *canvas) text(t *typist, text string, x, y float64, a anchor, ink, halo rgb, alpha float64) {
 	b := t.set(text)
-	left := int(math.Floor(x-b.advance*float64(a)+0.5)) - b.margin
+	left := int(math.Floor(x-float64(b.advance*float64(a))+0.5)) - b.margin
 	top := int(math.Floor(y+0.5)) - b.ascent
 	k := uint32(min(max(alpha, 0), 1) * 256)
 	for j := max(0, -top); j < min(b.h, c.h-top); j++ {

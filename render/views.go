@@ -55,8 +55,8 @@ const fitMargin = 0.06
 func (c Camera) Fit(f *field.Field, aspect float64) Camera {
 	right, up, forward := c.axes()
 	s, k := r3.SinCos(c.fov() / 2)
-	slope := s / k * (1 - 2*fitMargin)
-	wide := slope * max(aspect, 0.1)
+	slope := float64(s / k * (1 - 2*fitMargin))
+	wide := float64(slope * max(aspect, 0.1))
 	// For each direction of the frame, the farthest back that a point pushes the eye along the view, as a pair of
 	// half-planes; the middle between opposite ones centres the body.
 	const none = -1e300
@@ -78,7 +78,7 @@ func (c Camera) Fit(f *field.Field, aspect float64) Camera {
 	if near > far {
 		return c
 	}
-	x, y := (pushes[0]-pushes[1])/2*wide, (pushes[2]-pushes[3])/2*slope
+	x, y := float64((pushes[0]-pushes[1])/2*wide), float64((pushes[2]-pushes[3])/2*slope)
 	back := max(pushes[0]+pushes[1], pushes[2]+pushes[3]) / 2 // distance of the eye behind the plane z = 0
 	middle := (near + far) / 2
 	eye := -back
