@@ -159,34 +159,46 @@ func (b *builder) own(o *openLine, near *nearness) bool {
 // confirm traces a bundle: one curve on either side from the beginning, as far as the line goes. Both must come closer
 // to it, by a factor of e together.
 func (b *builder) confirm(ctx context.Context, o *openLine) bool {
-	backward := o.kind == AttachmentLine
-	at := o.locs[0]
-	tau := b.f.At(at).Tau
-	width := float64(bundleEdges * b.edge)
-	total := 0.0
 	locs := o.locs
 	for len(locs) > 2 && b.close(b.f.Position(locs[len(locs)-1]), o.end) { // everything meets at a node
 		locs = locs[:len(locs)-1]
 	}
+	width := float64(bundleEdges * b.edge)
+	sides, ok := b.bothSides(locs[0], width)
+	for least := len(locs) / 2; !ok && len(locs) > max(least, 2); { // beside a rim there is no room for a bundle
+		locs = locs[1:]
+		sides, ok = b.bothSides(locs[0], width)
+	}
+	if !ok {
+		return false
+	}
 	length := lengthOf(b.f, locs)
-	for _, sign := range [2]float64{1, -1} {
-		loc, ok := straight(b.f.Mesh, at, b.f.Lift(at.Tri, tau.Left().Scale(sign)), width)
-		if !ok {
-			return false
-		}
-		p := b.t.Trace(ctx, loc, trace.Options{Backward: backward, MaxLength: length})
+	o.bundle = 0
+	for _, side := range sides {
+		p := b.t.Trace(ctx, side, trace.Options{Backward: o.kind == AttachmentLine, MaxLength: length})
 		least := width
-		for i := len(p.Locs) - 1; i >= 0 && i > len(p.Locs)-lookBack; i-- {
-			least = math.Min(least, b.distance(locs, b.f.Position(p.Locs[i])))
+		for _, l := range p.Locs[max(0, len(p.Locs)-lookBack):] {
+			least = math.Min(least, b.distance(locs, b.f.Position(l)))
 		}
 		e := r3.Log(width / math.Max(least, float64(leastGap*b.edge)))
 		if e < clearExponent/2. {
 			return false
 		}
-		total += e / 2
+		o.bundle += e / 2
 	}
-	o.bundle = total
-	return total >= clearExponent
+	return o.bundle >= clearExponent
+}
+
+// bothSides returns the places at the given distance to the left and the right of the flow; false where a rim is nearer.
+func (b *builder) bothSides(at field.Loc, width float64) (sides [2]field.Loc, ok bool) {
+	ok = true
+	tau := b.f.At(at).Tau
+	for i, sign := range [2]float64{1, -1} {
+		var inside bool
+		sides[i], inside = straight(b.f.Mesh, at, b.f.Lift(at.Tri, tau.Left().Scale(sign)), width)
+		ok = ok && inside
+	}
+	return sides, ok
 }
 
 const (

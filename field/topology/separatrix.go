@@ -47,13 +47,35 @@ func (b *builder) addSeparatrices(ctx context.Context) error {
 	}); err != nil {
 		return err
 	}
-	b.s.Lines = append(b.s.Lines, lines...)
+	for i := range lines {
+		if !b.twice(lines[:i], &lines[i]) {
+			b.s.Lines = append(b.s.Lines, lines[i])
+		}
+	}
 	for i, p := range paths {
 		if p.End == trace.Cycle {
 			b.winding = append(b.winding, winding{p, starts[i].backward})
 		}
 	}
 	return nil
+}
+
+// twiceEdges is the distance in mean edges within which the middles of two lines from saddle to saddle are one.
+const twiceEdges = 2
+
+// twice tells whether a line from saddle to saddle is among the lines already: it is traced from both its ends.
+func (b *builder) twice(lines []Line, l *Line) bool {
+	if l.From < 0 || l.To < 0 || b.s.Points[l.From].Index >= 0 || b.s.Points[l.To].Index >= 0 {
+		return false
+	}
+	for i := range lines {
+		k := &lines[i]
+		if k.From == l.From && k.To == l.To &&
+			b.distance(k.Locs, b.f.Position(l.Locs[len(l.Locs)/2])) < float64(twiceEdges*b.edge) {
+			return true
+		}
+	}
+	return false
 }
 
 // separatrix makes a line of the path traced from one start.

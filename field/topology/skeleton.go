@@ -9,10 +9,11 @@ import (
 )
 
 // Capture discs, as shares of the length of the edges around a point. A line that comes within half an edge of a node or
-// focus goes there, as far as the mesh can tell; a saddle takes only lines that run into it.
+// focus goes there, as far as the mesh can tell; a saddle takes
+// only lines that run into it: passing it at less than a quarter of an edge is no passing that a mesh can tell.
 const (
 	catchShare       = 0.5
-	saddleCatchShare = 0.05
+	saddleCatchShare = 0.25
 )
 
 // builder makes the lines of a skeleton.

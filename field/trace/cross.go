@@ -12,6 +12,7 @@ type visit struct {
 	share float64 // of the half-edge, from its tail
 	at    int     // index in the path
 	miss  float64 // by how much it missed the crossing before that
+	ratio float64 // of the last two misses
 	turns int
 }
 
