@@ -4,6 +4,7 @@ import (
 	"context"
 	"encoding/base64"
 	"encoding/json"
+	"net/http"
 	"net/http/httptest"
 	"os"
 	"os/exec"
@@ -31,13 +32,13 @@ var programs = sync.OnceValues(func() (string, error) {
 
 // tab is a page of Shearprint in Chromium.
 type tab struct {
-	*testing.T
+	testing.TB
 	ctx     context.Context
 	address string
 }
 
 // chromium returns the browser's path. Where there is none the test is skipped, but not on a CI machine.
-func chromium(t *testing.T) string {
+func chromium(t testing.TB) string {
 	t.Helper()
 	if testing.Short() {
 		t.Skip("a browser takes too long for -short")
@@ -56,7 +57,7 @@ func chromium(t *testing.T) string {
 
 // visit opens the page of a server with the given runs, or the demo, in a window of w x h. query is what follows the
 // address, as "?present=cpu".
-func visit(t *testing.T, w, h int, query string, runs ...web.Run) *tab {
+func visit(t testing.TB, w, h int, query string, runs ...web.Run) *tab {
 	t.Helper()
 	path := chromium(t)
 	dir, err := programs()
@@ -66,7 +67,11 @@ func visit(t *testing.T, w, h int, query string, runs ...web.Run) *tab {
 	if len(runs) == 0 {
 		runs = []web.Run{{Name: demo.Name, Data: func() ([]byte, error) { return demo.Radome, nil }}}
 	}
-	server := httptest.NewServer(web.Handler(dir, runs))
+	handler := web.Handler(dir, runs)
+	if strings.Contains(query, "media=wrong") {
+		handler = wrongMedia(handler)
+	}
+	server := httptest.NewServer(handler)
 	t.Cleanup(server.Close)
 	options := append(chromedp.DefaultExecAllocatorOptions[:],
 		chromedp.ExecPath(path), chromedp.WindowSize(w, h), chromedp.Flag("disable-quic", true),
@@ -81,7 +86,7 @@ func visit(t *testing.T, w, h int, query string, runs ...web.Run) *tab {
 	t.Cleanup(cancel)
 	ctx, cancel = context.WithTimeout(ctx, patience)
 	t.Cleanup(cancel)
-	b := &tab{T: t, ctx: ctx, address: server.URL + "/" + query}
+	b := &tab{TB: t, ctx: ctx, address: server.URL + "/" + query}
 	chromedp.ListenTarget(ctx, func(event any) {
 		switch e := event.(type) {
 		case *runtime.EventExceptionThrown:
@@ -185,4 +190,23 @@ func (b *tab) alert() string {
 func (b *tab) settle() {
 	b.Helper()
 	eval[any](b, "shearprint.settled()")
+}
+
+// wrongMedia serves everything that the page's worker fetches as plain text.
+func wrongMedia(h http.Handler) http.Handler {
+	return http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
+		h.ServeHTTP(textWriter{w, strings.HasSuffix(r.URL.Path, ".wasm")}, r)
+	})
+}
+
+type textWriter struct {
+	http.ResponseWriter
+	plain bool
+}
+
+func (w textWriter) WriteHeader(status int) {
+	if w.plain {
+		w.Header().Set("Content-Type", "text/plain")
+	}
+	w.ResponseWriter.WriteHeader(status)
 }

@@ -1,6 +1,8 @@
+// Package web holds the page, serves it with its runs, and compiles the two programs that run in the browser.
 package web
 
 import (
+	"bytes"
 	"context"
 	"crypto/sha256"
 	"encoding/hex"
@@ -13,6 +15,8 @@ import (
 	"path/filepath"
 	"runtime"
 	"strings"
+
+	"github.com/klauspost/compress/gzip"
 )
 
 // Program is one of the two programs that run in the browser.
@@ -29,6 +33,18 @@ var Programs = []Program{
 
 // supportFile is the part of the Go distribution that starts a program in a browser.
 const supportFile = "wasm_exec.js"
+
+// packedEnding is what the compressed twin of a built file has behind its name.
+const packedEnding = ".gz"
+
+// builtFiles returns the names of what Build leaves in its folder, without the compressed twins.
+func builtFiles() []string {
+	names := []string{supportFile}
+	for _, p := range Programs {
+		names = append(names, p.Name)
+	}
+	return names
+}
 
 // Build compiles the browser's programs, unless they are in the cache already, and returns the folder that holds them.
 // Progress is told in short sentences. It needs the Go toolchain and the module's sources.
@@ -66,6 +82,11 @@ func Build(ctx context.Context, progress func(string)) (string, error) {
 	if err := copySupport(ctx, work); err != nil {
 		return "", err
 	}
+	for _, name := range builtFiles() {
+		if err := pack(filepath.Join(work, name)); err != nil {
+			return "", err
+		}
+	}
 	// Somebody else may have finished the same build first: theirs is as good.
 	if err := os.Rename(work, dir); err != nil && !complete(dir) {
 		return "", fmt.Errorf("%s: %w", dir, err)
@@ -76,12 +97,8 @@ func Build(ctx context.Context, progress func(string)) (string, error) {
 
 // complete tells whether the folder holds all that the page needs.
 func complete(dir string) bool {
-	names := []string{supportFile}
-	for _, p := range Programs {
-		names = append(names, p.Name)
-	}
-	for _, n := range names {
-		if _, err := os.Stat(filepath.Join(dir, n)); err != nil {
+	for _, name := range builtFiles() {
+		if _, err := os.Stat(filepath.Join(dir, name+packedEnding)); err != nil {
 			return false
 		}
 	}
@@ -146,6 +163,26 @@ func compile(ctx context.Context, root string, p Program, to string) error {
 		return fmt.Errorf("%s does not compile for the browser: %s", p.Package, strings.Join(strings.Fields(string(out)), " "))
 	}
 	return nil
+}
+
+// pack writes the compressed twin of a file.
+func pack(file string) error {
+	data, err := os.ReadFile(file)
+	if err != nil {
+		return err
+	}
+	var b bytes.Buffer
+	z, err := gzip.NewWriterLevel(&b, gzip.BestCompression)
+	if err != nil {
+		return err
+	}
+	if _, err := z.Write(data); err != nil {
+		return err
+	}
+	if err := z.Close(); err != nil {
+		return err
+	}
+	return os.WriteFile(file+packedEnding, b.Bytes(), 0o644)
 }
 
 func copySupport(ctx context.Context, dir string) error {

@@ -2,17 +2,16 @@ package web
 
 import (
 	"bytes"
-	"compress/gzip"
+	"crypto/sha256"
 	"embed"
+	"encoding/hex"
 	"fmt"
 	"io/fs"
 	"net/http"
 	"os"
 	"path"
 	"path/filepath"
-	"strconv"
 	"strings"
-	"sync"
 	"time"
 )
 
@@ -26,13 +25,13 @@ type Run struct {
 }
 
 // Handler serves the page, the compiled programs in the folder dir (see Build) and the runs, the first of which the page
-// opens. Everything is compressed where the browser takes that.
+// opens. The programs go compressed where the browser takes that, and are loaded again only after a change.
 func Handler(dir string, runs []Run) http.Handler {
 	page, err := fs.Sub(pages, "page")
 	if err != nil {
 		panic("web: " + err.Error()) // the folder is embedded above
 	}
-	s := &server{page: page, dir: dir, runs: map[string]Run{}, packed: map[string][]byte{}}
+	s := &server{page: page, dir: dir, runs: map[string]Run{}}
 	for i, r := range runs {
 		s.runs[r.Name] = r
 		if i == 0 {
@@ -47,9 +46,6 @@ type server struct {
 	dir   string
 	runs  map[string]Run
 	first string
-
-	mu     sync.Mutex
-	packed map[string][]byte // compressed answers, by path
 }
 
 // kinds are the media types that browsers insist on.
@@ -58,72 +54,72 @@ var kinds = map[string]string{
 	".wasm": "application/wasm", ".json": "application/json", ".svg": "image/svg+xml", ".glb": "model/gltf-binary",
 }
 
+// headers go with every answer. The first two let a page share memory between workers; the policy keeps the page to its
+// own server.
+var headers = map[string]string{
+	"Cross-Origin-Opener-Policy": "same-origin", "Cross-Origin-Embedder-Policy": "require-corp",
+	"X-Content-Type-Options": "nosniff", "Cache-Control": "no-cache",
+	"Content-Security-Policy": "default-src 'self' 'wasm-unsafe-eval'; img-src 'self' data: blob:; style-src 'self' 'unsafe-inline'",
+}
+
 func (s *server) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 	if r.Method != http.MethodGet && r.Method != http.MethodHead {
 		http.Error(w, "only GET and HEAD are answered", http.StatusMethodNotAllowed)
 		return
 	}
-	name := strings.TrimPrefix(path.Clean(r.URL.Path), "/")
-	if name == "" || name == "." {
+	name := strings.TrimPrefix(path.Clean("/"+r.URL.Path), "/")
+	if name == "" {
 		name = "index.html"
 	}
-	data, err := s.file(name)
+	packed := strings.Contains(r.Header.Get("Accept-Encoding"), "gzip")
+	data, packed, err := s.file(name, packed)
 	if err != nil {
 		http.NotFound(w, r)
 		return
+	}
+	head := w.Header()
+	for k, v := range headers {
+		head.Set(k, v)
 	}
 	kind, ok := kinds[path.Ext(name)]
 	if !ok {
 		kind = "application/octet-stream"
 	}
-	head := w.Header()
 	head.Set("Content-Type", kind)
-	head.Set("Cache-Control", "no-cache")
-	head.Set("Cross-Origin-Opener-Policy", "same-origin")
-	head.Set("Cross-Origin-Embedder-Policy", "require-corp")
-	head.Set("X-Content-Type-Options", "nosniff")
-	head.Set("X-Length", strconv.Itoa(len(data))) // of what is compressed below, for progress
-	if strings.Contains(r.Header.Get("Accept-Encoding"), "gzip") {
+	if packed {
 		head.Set("Content-Encoding", "gzip")
-		data = s.pack(name, data)
 	}
+	head.Set("Vary", "Accept-Encoding")
+	sum := sha256.Sum256(data)
+	head.Set("ETag", `"`+hex.EncodeToString(sum[:8])+`"`)
 	http.ServeContent(w, r, "", time.Time{}, bytes.NewReader(data))
 }
 
-// file returns the bytes behind a path: the page's own files, the programs, the runs under runs/, and their list.
-func (s *server) file(name string) ([]byte, error) {
+// file returns the bytes behind a path, compressed if they can be had so and are wanted so: the page's own files, the
+// programs, the runs under runs/, and their list.
+func (s *server) file(name string, packed bool) ([]byte, bool, error) {
 	if name == "runs.json" {
-		return fmt.Appendf(nil, "{\"first\": %q}\n", s.first), nil
+		return fmt.Appendf(nil, "{\"first\": %q}\n", s.first), false, nil
 	}
 	if run, ok := strings.CutPrefix(name, "runs/"); ok {
 		r, ok := s.runs[run]
 		if !ok {
-			return nil, fs.ErrNotExist
+			return nil, false, fs.ErrNotExist
 		}
-		return r.Data()
+		data, err := r.Data()
+		return data, false, err
 	}
-	if name == supportFile {
-		return os.ReadFile(filepath.Join(s.dir, supportFile))
-	}
-	for _, p := range Programs {
-		if p.Name == name {
-			return os.ReadFile(filepath.Join(s.dir, name))
+	for _, built := range builtFiles() {
+		if built != name {
+			continue
 		}
+		if packed {
+			data, err := os.ReadFile(filepath.Join(s.dir, name+packedEnding))
+			return data, true, err
+		}
+		data, err := os.ReadFile(filepath.Join(s.dir, name))
+		return data, false, err
 	}
-	return fs.ReadFile(s.page, name)
-}
-
-// pack returns the data compressed; what it packed once it keeps.
-func (s *server) pack(name string, data []byte) []byte {
-	s.mu.Lock()
-	defer s.mu.Unlock()
-	if p, ok := s.packed[name]; ok && !strings.HasPrefix(name, "runs") {
-		return p
-	}
-	var b bytes.Buffer
-	z := gzip.NewWriter(&b)
-	z.Write(data) // a bytes.Buffer takes everything
-	z.Close()
-	s.packed[name] = b.Bytes()
-	return b.Bytes()
+	data, err := fs.ReadFile(s.page, name)
+	return data, false, err
 }

@@ -262,7 +262,7 @@ func (b *tab) capture() []byte {
 	b.Helper()
 	var data []byte
 	b.do(chromedp.CaptureScreenshot(&data))
-	return pixels(b.T, data)
+	return pixels(b.TB, data)
 }
 
 // The picture call gives a PNG of the wanted size.
@@ -281,4 +281,10 @@ func TestPicture(t *testing.T) {
 	if size := img.Bounds().Size(); size.X != 640 || size.Y != 360 {
 		t.Errorf("the picture has %v pixels", size)
 	}
+}
+
+// A server that names the wrong media type for the programs does no harm.
+func TestWrongMediaType(t *testing.T) {
+	b := visit(t, 400, 300, "?present=cpu&media=wrong")
+	b.until(ready)
 }

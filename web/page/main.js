@@ -21,8 +21,10 @@ let frames = null;
 
 const clickReach = 10; // CSS pixels around a click within which a critical point is taken
 
-engine.addEventListener("downloaded", ({ detail }) => { timings.download = detail.milliseconds; });
-engine.addEventListener("started", ({ detail }) => { timings.start = detail.milliseconds - timings.download; });
+engine.addEventListener("started", ({ detail }) => {
+  timings.download = detail.download;
+  timings.start = Math.max(0, detail.milliseconds - detail.download);
+});
 engine.addEventListener("died", ({ detail }) => work.complain(detail));
 engine.addEventListener("failed", ({ detail }) => work.complain(detail.error));
 engine.addEventListener("view", ({ detail }) => writeAddress(detail.link));

@@ -47,7 +47,7 @@ export class Work {
   async #fetch(url, stage, signal) {
     const answer = await fetch(url, { signal });
     if (!answer.ok) return null;
-    const total = Number(answer.headers.get("X-Length")); // Content-Length counts compressed bytes
+    const total = answer.headers.has("Content-Encoding") ? 0 : Number(answer.headers.get("Content-Length"));
     const parts = [];
     let have = 0;
     for (const reader = answer.body.getReader(); ;) {

@@ -7,15 +7,18 @@ self.onmessage = ({ data }) => waiting.push(data);
 
 const tell = (message) => self.postMessage([JSON.stringify({ version, id: 0, ...message }), null]);
 
-// program fetches and compiles at once where the server names the right media type, else one after the other. A browser
-// that lacks what the program needs says so here.
+// program compiles while it downloads. Where the server names another media type than browsers insist on, that fails, and
+// the bytes are taken as they are.
 async function program(imports) {
-  const answer = await fetch("worker.wasm");
+  const address = new URL("worker.wasm", self.location).href;
+  const answer = await fetch(address);
   if (!answer.ok) throw new Error(`worker.wasm: the server answers ${answer.status}`);
-  const began = performance.now();
-  const bytes = await answer.arrayBuffer(); // works whatever media type the server gives
-  tell({ event: "downloaded", body: { milliseconds: performance.now() - began } });
-  return (await WebAssembly.instantiate(bytes, imports)).instance;
+  const spare = answer.clone();
+  try {
+    return (await WebAssembly.instantiateStreaming(answer, imports)).instance;
+  } catch {
+    return (await WebAssembly.instantiate(await spare.arrayBuffer(), imports)).instance;
+  }
 }
 
 async function start() {
@@ -25,7 +28,8 @@ async function start() {
   const ready = new Promise((resolve) => { self.shearprintReady = resolve; });
   go.run(instance).then(() => tell({ event: "died", error: "the program in the worker has stopped; reload the page" }));
   await ready;
-  tell({ event: "started", body: { milliseconds: performance.now() - began } });
+  const load = performance.getEntriesByType("resource").find((e) => e.name.endsWith("worker.wasm"));
+  tell({ event: "started", body: { milliseconds: performance.now() - began, download: load?.duration ?? 0 } });
   self.onmessage = ({ data }) => self.shearprintReceive(data[0], data[1]);
   for (const [text, block] of waiting) self.shearprintReceive(text, block);
 }
