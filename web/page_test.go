@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"context"
 	"encoding/base64"
+	"fmt"
 	"image/png"
 	"math"
 	"strings"
@@ -11,10 +12,13 @@ import (
 
 	"github.com/chromedp/cdproto/input"
 	"github.com/chromedp/chromedp"
+	"github.com/chromedp/chromedp/kb"
 
+	"shearprint/field/exact"
 	"shearprint/field/format"
 	"shearprint/field/study"
 	"shearprint/testdata/demo"
+	"shearprint/web"
 )
 
 type view struct {
@@ -111,8 +115,8 @@ func TestClickOnSaddle(t *testing.T) {
 	b.settle()
 	b.shot("saddle")
 	card := eval[string](b, `document.getElementById("card").innerText`)
-	for _, word := range []string{"Position", "tau", "Pressure p", "cp", "Jacobian", "Eigenvalues", "Trace", "Determinant", "Type", "Sense",
-		"Confidence", "Pa/m", "eigenvectors"} {
+	for _, word := range []string{"Position", "tau", "Pressure p", "cp", "Jacobian", "Eigenvalues", "Trace", "Determinant",
+		"Type", "Sense", "Confidence", "Pa/m", "eigenvectors"} {
 		if !strings.Contains(card, word) {
 			t.Errorf("the card lacks %s", word)
 		}
@@ -157,9 +161,18 @@ func TestHand(t *testing.T) {
 	if !(keyed.distance() < closer.distance()) {
 		t.Error("the plus key comes no closer")
 	}
-	b.do(chromedp.KeyEvent("\u0301")) // a key that means nothing
-	b.do(chromedp.KeyEvent("\uE014")) // arrow right, as WebDriver numbers it
-	b.do(chromedp.KeyEvent("\u001b"))
+	b.do(chromedp.KeyEvent(kb.ArrowRight))
+	b.settle()
+	if arrow := b.view(); arrow.Eye == keyed.Eye {
+		t.Error("an arrow key does not turn the run")
+	}
+	b.do(chromedp.KeyEvent(kb.Home))
+	b.settle()
+	if home := b.view(); math.Abs(home.distance()/start.distance()-1) > 1e-6 {
+		t.Error("Home does not show the whole run")
+	}
+	b.do(chromedp.KeyEvent(kb.Enter))
+	b.until(`!document.getElementById("card").hidden`)
 	if alert := b.alert(); alert != "" {
 		t.Errorf("keys raise an alert: %s", alert)
 	}
@@ -192,11 +205,13 @@ func TestCallsAreTheCommands(t *testing.T) {
 			t.Errorf("%s: the answer is no object with a schema", c.name)
 		}
 	}
-	if text := eval[string](b, `shearprint.call("probe", {at: [900, 0, 0]}).then(() => "", (e) => e.message)`); !strings.Contains(text, "off the surface") {
-		t.Errorf("a probe far away: %q", text)
-	}
-	if text := eval[string](b, `shearprint.call("nonsense").then(() => "", (e) => e.message)`); !strings.Contains(text, "nonsense") {
-		t.Errorf("an unknown call: %q", text)
+	for call, word := range map[string]string{
+		`"probe", {at: [900, 0, 0]}`: "off the surface", `"nonsense"`: "nonsense", `"view", {colour: "blue"}`: "blue",
+		`"view", {link: "#eye=1"}`: "eye", `"picture", {width: 0}`: "pixels",
+	} {
+		if text := eval[string](b, `shearprint.call(`+call+`).then(() => "", (e) => e.message)`); !strings.Contains(text, word) {
+			t.Errorf("call(%s) fails with %q, which lacks %q", call, text, word)
+		}
 	}
 }
 
@@ -287,4 +302,49 @@ func TestPicture(t *testing.T) {
 func TestWrongMediaType(t *testing.T) {
 	b := visit(t, 400, 300, "?present=cpu&media=wrong")
 	b.until(ready)
+}
+
+// Cancel ends the reading of the pattern; the run stays, and its pattern can be read later.
+func TestCancel(t *testing.T) {
+	data := ply(t, exact.Cases()[0].Raw(300_000))
+	b := visit(t, 800, 600, "?present=cpu", web.Run{Name: "ball.ply", Data: func() ([]byte, error) { return data, nil }})
+	b.until(`document.getElementById("stage-name").textContent.startsWith("Finding") && !document.getElementById("progress").hidden`)
+	b.do(chromedp.Evaluate(`document.getElementById("cancel").click()`, nil))
+	b.until(ready)
+	if rows := eval[int](b, `document.querySelectorAll("#book tbody tr").length`); rows != 0 {
+		t.Fatalf("after cancelling the ledger has %d rows", rows)
+	}
+	b.settle()
+	b.do(chromedp.Click("#book button"))
+	b.until(ready + ` && document.querySelectorAll("#book tbody tr").length > 0`)
+}
+
+// The noise floor takes weak points out of the book while it moves, in balanced groups.
+func TestFloor(t *testing.T) {
+	b := visit(t, 1280, 720, "?present=cpu")
+	b.until(ready)
+	count := `document.querySelectorAll("#book tbody tr").length`
+	all := eval[int](b, count)
+	last := all
+	for value := 0; value <= 1000; value += 100 {
+		left := eval[int](b, fmt.Sprintf(`(() => { const r = document.getElementById("floor-range"); r.value = %d;
+			r.dispatchEvent(new Event("input")); return `+count+`; })()`, value))
+		sum := eval[string](b, `document.querySelector("#book tfoot tr:nth-child(2) td").textContent`)
+		if left > last || sum != "0" {
+			t.Errorf("at %d of 1000 the book has %d points after %d, and the sum %s", value, left, last, sum)
+		}
+		last = left
+	}
+	if last >= all {
+		t.Errorf("the highest floor leaves all %d points", last)
+	}
+	eval[any](b, `(() => { const r = document.getElementById("floor-range"); r.value = 500; r.dispatchEvent(new Event("input"));
+		r.dispatchEvent(new Event("change")); })()`)
+	b.until(ready)
+	b.settle()
+	live := eval[int](b, count)
+	read := eval[map[string]any](b, `shearprint.call("topology", {min_robustness: (await shearprint.call("view")).floor, lines: false})`)
+	if points := read["points"].([]any); len(points) != live {
+		t.Errorf("the book has %d points, the command %d", live, len(points))
+	}
 }

@@ -71,7 +71,8 @@ func TestTouch(t *testing.T) {
 	if wide := eval[int](b, "document.documentElement.scrollWidth"); wide > 390 {
 		t.Errorf("the page is %d pixels wide on a screen of 390", wide)
 	}
-	small := eval[[]string](b, `[...document.querySelectorAll("button")].filter((e) => e.offsetHeight && e.offsetHeight < 36).map((e) => e.textContent)`)
+	small := eval[[]string](b, `[...document.querySelectorAll("button")].filter((e) => e.offsetHeight && e.offsetHeight < 36)
+		.map((e) => e.textContent)`)
 	if len(small) > 0 {
 		t.Errorf("too small for a finger: %s", strings.Join(small, ", "))
 	}

@@ -29,11 +29,16 @@ func (j *Jobs) Begin(parent context.Context, id int64) (ctx context.Context, end
 }
 
 // Cancel ends the work on the request; 0 ends all. Requests that are over are ignored.
-func (j *Jobs) Cancel(id int64) {
+func (j *Jobs) Cancel(id int64) { j.end(func(k int64) bool { return id == 0 || k == id }) }
+
+// Keep ends all work but that on the request.
+func (j *Jobs) Keep(id int64) { j.end(func(k int64) bool { return k != id }) }
+
+func (j *Jobs) end(meant func(id int64) bool) {
 	j.mu.Lock()
 	defer j.mu.Unlock()
 	for k, cancel := range j.open {
-		if id == 0 || k == id {
+		if meant(k) {
 			cancel()
 		}
 	}

@@ -159,6 +159,12 @@ func TestJobs(t *testing.T) {
 		t.Errorf("cancelling 1: %v, %v", a.Err(), b.Err())
 	}
 	endA()
+	c, endC := jobs.Begin(context.Background(), 3)
+	jobs.Keep(2)
+	if b.Err() != nil || c.Err() == nil {
+		t.Errorf("keeping 2: %v, %v", b.Err(), c.Err())
+	}
+	endC()
 	jobs.Cancel(0)
 	if b.Err() == nil {
 		t.Error("cancelling all leaves one")

@@ -164,6 +164,7 @@ func (d *desk) openRun(ctx context.Context, r session.Request, block js.Value) (
 		return nil, err
 	}
 	d.run = &run{f, study.New(f)}
+	d.jobs.Keep(r.ID) // nobody waits for answers about the old run
 	done := make(chan opened, 1)
 	d.painter.enter("open", func() {
 		view, warning := d.painter.begin(f, o)

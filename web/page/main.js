@@ -35,6 +35,7 @@ engine.addEventListener("view", ({ detail }) => writeAddress(detail.link));
 async function openBytes(name, key, bytes, link) {
   const answer = await work.on(`Reading ${name}`, engine.ask("open", { name, run: key, link }, bytes));
   run = { ...answer, key };
+  work.loaded = true;
   shown = null;
   timings.load = answer.milliseconds;
   el("run").textContent = `${run.name} \u00b7 ${run.triangles.toLocaleString("en")} triangles`;
@@ -52,7 +53,9 @@ async function openBytes(name, key, bytes, link) {
 
 // readPattern finds points and lines above a floor; the ledger of all of them knows what a rising floor will cancel.
 async function readPattern(floor) {
+  const read = run;
   const answer = await work.on("Finding critical points and lines", engine.ask("points", { robustness: floor }));
+  if (run !== read) return; // another run was opened meanwhile
   shown = JSON.parse(answer.text);
   if (floor === 0) {
     timings.topology = answer.milliseconds;

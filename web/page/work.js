@@ -1,10 +1,12 @@
 // What is being worked on, and what went wrong: progress with a cancel button, the state of the page, and the alert.
 
 const root = document.documentElement;
+const cancelled = "cancelled"; // what the worker says of a request that was cancelled
 const el = (id) => document.getElementById(id);
 
 export class Work {
-  #engine; #busy = 0; #loaded = false; #abort = null;
+  #engine; #busy = 0; #turn = 0; #abort = null;
+  loaded = false; // whether a run is open
 
   constructor(engine) {
     this.#engine = engine;
@@ -60,17 +62,21 @@ export class Work {
     return new Blob(parts).arrayBuffer();
   }
 
-  // during runs what changes the run or its reading: the page is "working", then "ready", or "error".
+  // during runs what changes the run or its reading: the page is "working", then "ready", or "error". A task that begins
+  // later has the say.
   async during(task) {
     this.clear();
-    root.dataset.state = this.#loaded ? "working" : "loading";
+    const turn = ++this.#turn;
+    root.dataset.state = this.loaded ? "working" : "loading";
+    let problem = "";
     try {
       await task();
-      this.#loaded = true;
-      if (!el("alert-text").textContent) root.dataset.state = "ready";
     } catch (err) {
-      this.complain(err.name === "AbortError" ? "cancelled" : err.message);
+      problem = err.name === "AbortError" ? cancelled : err.message;
     }
+    if (turn !== this.#turn) return;
+    if (problem && !(problem === cancelled && this.loaded)) this.complain(problem);
+    else root.dataset.state = "ready";
   }
 
   // quietly runs what leaves the state alone unless it fails.
