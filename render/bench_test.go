@@ -41,7 +41,8 @@ var benchField = map[int]func() *field.Field{
 func BenchmarkFrame(b *testing.B) {
 	for _, n := range benchSizes {
 		for _, q := range []render.Quality{render.Moving, render.Still} {
-			b.Run(fmt.Sprintf("%d/%s", n, map[render.Quality]string{render.Moving: "moving", render.Still: "still"}[q]), func(b *testing.B) {
+			name := fmt.Sprintf("%d/%s", n, [...]string{render.Moving: "moving", render.Still: "still"}[q])
+			b.Run(name, func(b *testing.B) {
 				f := benchField[n]()
 				cam := render.NamedView("iso", f).Fit(f, 16.0/9)
 				r := render.NewRenderer()
@@ -79,7 +80,8 @@ func BenchmarkRecolour(b *testing.B) {
 	r := render.NewRenderer()
 	for b.Loop() {
 		for _, bands := range []int{0, 8} {
-			if _, err := r.Frame(context.Background(), &render.Scene{Field: f, Bands: bands}, cam, 1280, 720, render.Still); err != nil {
+			s := &render.Scene{Field: f, Bands: bands}
+			if _, err := r.Frame(context.Background(), s, cam, 1280, 720, render.Still); err != nil {
 				b.Fatal(err)
 			}
 		}

@@ -19,7 +19,7 @@ type body struct {
 	normal  [][4]float32 // the fourth is 1 on a sharp edge, where the normal does not serve the triangles, else 0
 	fine    level        // all triangles
 	creases []int32      // half-edges of rims and sharp edges
-	coarse  level        // fewer triangles of some of the same vertices, for moving frames; the same as fine for small meshes
+	coarse  level        // fewer triangles of some of the vertices, for moving frames; for small meshes fine
 }
 
 // level is a set of triangles between vertices of a body.
@@ -30,8 +30,8 @@ type level struct {
 	used []int32      // the vertices; nil for all
 }
 
-// creaseCos is the cosine of the angle between a triangle and its vertex normal above which the vertex is taken to lie on
-// an edge and lit flat: 30 degrees each side of an edge of 60; smooth meshes that are worth showing bend less.
+// creaseCos is the cosine of the angle between a triangle and its vertex normal above which the vertex is taken to lie
+// on an edge and lit flat: 30 degrees each side of an edge of 60; smooth meshes that are worth showing bend less.
 const creaseCos = 0.866
 
 func newBody(f *field.Field) *body {

@@ -84,8 +84,8 @@ func (c Camera) Pan(dx, dy float64) Camera {
 	return c
 }
 
-// Zoom brings the camera nearer to p by the factor (2: twice as large), so that p stays where it is on the picture. p is
-// the place under the pointer (Renderer.Pick), or Lens.OnTarget where there is no surface.
+// Zoom brings the camera nearer to p by the factor (2: twice as large), so that p stays where it is on the picture. p
+// is the place under the pointer (Renderer.Pick), or Lens.OnTarget where there is no surface.
 func (c Camera) Zoom(factor float64, p r3.Vec) Camera {
 	if !(factor > 0) || math.IsInf(factor, 0) {
 		return c

@@ -140,7 +140,8 @@ func TestLookFrom(t *testing.T) {
 	if c, err = LookFrom("0,0,3:0,0,0"); err != nil || c.Up != (r3.Vec{Y: 1}) {
 		t.Errorf("straight down: %+v, %v", c, err)
 	}
-	for _, bad := range []string{"", "1,2,3", "1,2:0,0,0", "1,2,x:0,0,0", "1,1,1:1,1,1", "NaN,0,0:1,1,1", "1,2,3:4,5,6,7"} {
+	for _, bad := range []string{"", "1,2,3", "1,2:0,0,0", "1,2,x:0,0,0", "1,1,1:1,1,1",
+		"NaN,0,0:1,1,1", "1,2,3:4,5,6,7"} {
 		if _, err := LookFrom(bad); err == nil {
 			t.Errorf("%q is accepted", bad)
 		}

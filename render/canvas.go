@@ -28,8 +28,8 @@ func (c *canvas) blend(i int, color rgb, cover uint32) {
 	o[3] = uint8(cover + uint32(o[3])*k/255)
 }
 
-// shape fills what lies inside a signed distance [pixels, negative inside], with soft edges. It looks at the pixels within
-// reach of x, y.
+// shape fills what lies inside a signed distance [pixels, negative inside], with soft edges. It looks at the pixels
+// within reach of x, y.
 func (c *canvas) shape(x, y, reach float64, color rgb, alpha float64, distance func(dx, dy float64) float64) {
 	x0, x1 := max(int(math.Floor(x-reach)), 0), min(int(math.Ceil(x+reach)), c.w-1)
 	y0, y1 := max(int(math.Floor(y-reach)), 0), min(int(math.Ceil(y+reach)), c.h-1)

@@ -76,9 +76,9 @@ func correlation(a, b []float64) float64 {
 	return ab / math.Sqrt(aa*bb)
 }
 
-// Every pixel of the plain method has a streamline through its middle; of the fast one, streamlines pass up to half a pixel
-// beside it and one pixel in four is the mean of its neighbours. They can therefore not agree better than noise with cells
-// of one and a half pixels agrees with itself half a pixel aside.
+// Every pixel of the plain method has a streamline through its middle; of the fast one, streamlines pass up to half a
+// pixel beside it and one pixel in four is the mean of its neighbours. They can therefore not agree better than noise
+// with cells of one and a half pixels agrees with itself half a pixel aside.
 func TestFastConvolutionAgreesWithThePlainMethod(t *testing.T) {
 	const w, h = 320, 240
 	p := whole(w, h, vortices(w, h))
@@ -100,8 +100,8 @@ func TestFastConvolutionAgreesWithThePlainMethod(t *testing.T) {
 	}
 }
 
-// The exact value: in a parallel flow along the rows, without any doubt about the streamline, the fast method must give the
-// sum that the kernel stands for.
+// The exact value: in a parallel flow along the rows, without any doubt about the streamline, the fast method must give
+// the sum that the kernel stands for.
 func TestConvolutionOfParallelFlowIsTheKernelSum(t *testing.T) {
 	const w, h = 200, 5
 	for _, sign := range []float64{1, -1} {
@@ -124,8 +124,8 @@ func TestConvolutionOfParallelFlowIsTheKernelSum(t *testing.T) {
 	}
 }
 
-// Variance of smeared white noise is one everywhere, also where the kernel is cut short at the end of a flow: the gain of
-// a box kernel over n samples is sqrt n, that of any kernel 1/sqrt of its sum of squares.
+// Variance of smeared white noise is one everywhere, also where the kernel is cut short at the end of a flow: the gain
+// of a box kernel over n samples is sqrt n, that of any kernel 1/sqrt of its sum of squares.
 func TestContrastIsEvenUpToTheEnds(t *testing.T) {
 	const w, h = 400, 300
 	p := whole(w, h, func(x, y float64) (float64, float64) { return 1, 0 })

@@ -15,13 +15,13 @@
 //
 // The surface is rastered once per camera into a G-buffer (nearness, triangle, barycentric weights). The surface pass
 // takes from it the projected unit direction of tau, the noise, light and the texture's weight; the convolution smears
-// the noise along the direction (Stalling and Hege 1995); the scalar pass takes cp, p or |tau|. Mixing looks colours up in
-// a palette and modulates them; lines, marks, labels and the legend lie above as an overlay. Every stage is kept until
-// something that it depends on changes: a changed palette or range costs neither raster nor convolution.
+// the noise along the direction (Stalling and Hege 1995); the scalar pass takes cp, p or |tau|. Mixing looks colours up
+// in a palette and modulates them; lines, marks, labels and the legend lie above as an overlay. Every stage is kept
+// until something that it depends on changes: a changed palette or range costs neither raster nor convolution.
 //
 // # Determinism
 //
-// Work is split over bands of rows with fixed bounds, so that the bytes do not depend on the number of processors, and a
-// picture that is made in strips is the same as one made at once. Products that are added to something are wrapped in a
-// conversion, which forbids fused multiply-add (see package r3).
+// Work is split over bands of rows with fixed bounds, so that the bytes do not depend on the number of processors, and
+// a picture that is made in strips is the same as one made at once. Products that are added to something are wrapped in
+// a conversion, which forbids fused multiply-add (see package r3).
 package render

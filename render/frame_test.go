@@ -46,7 +46,8 @@ func marked(f *field.Field) *Scene {
 	return s
 }
 
-// The bytes depend neither on the number of processors, nor on what the renderer drew before, nor on the run of the test.
+// The bytes depend neither on the number of processors, nor on what the renderer drew before, nor on the run of the
+// test.
 func TestSameBytes(t *testing.T) {
 	f := strained(3000)
 	s := marked(f)

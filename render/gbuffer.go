@@ -135,7 +135,8 @@ func (p *plate) surfaceRow(b *body, l *level, lens *Lens, look *look, row int) {
 	}
 }
 
-// creased returns the normal at a place of a triangle that touches a sharp edge: corners on the edge have the triangle's.
+// creased returns the normal at a place of a triangle that touches a sharp edge: corners on the edge have the
+// triangle's.
 func (b *body) creased(tri *[3]int32, b0, b1, b2 float64) (x, y, z float64) {
 	flat := single(b.pos[tri[1]].Sub(b.pos[tri[0]]).Cross(b.pos[tri[2]].Sub(b.pos[tri[0]])).Unit())
 	for k, w := range [3]float64{b0, b1, b2} {
@@ -187,7 +188,8 @@ func (p *plate) stepRow(lens *Lens, row int) {
 	}
 }
 
-// jumps tells whether the surface jumps between a and b, whose difference is large; before and after lie on either side.
+// jumps tells whether the surface jumps between a and b, whose difference is large; before and after lie on either
+// side.
 func jumps(before, a, b, after *hit) bool {
 	if b.tri == noHit || (a.tri < 0) != (b.tri < 0) {
 		return true

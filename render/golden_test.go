@@ -48,8 +48,8 @@ func fromRun(name string) func(t *testing.T) *field.Field {
 	}
 }
 
-// Pictures may differ from the golden ones by what a later change of rounding does, not by what an eye would see: the mean
-// difference of a byte, and the share of pixels that differ by more than a tenth of the range.
+// Pictures may differ from the golden ones by what a later change of rounding does, not by what an eye would see: the
+// mean difference of a byte, and the share of pixels that differ by more than a tenth of the range.
 const (
 	goldenMean  = 1.0
 	goldenShare = 0.01
@@ -129,6 +129,7 @@ func compareGolden(t *testing.T, file string, got *image.RGBA) {
 	}
 	n := float64(len(got.Pix))
 	if float64(sum)/n > goldenMean || float64(far)/n > goldenShare {
-		t.Errorf("%s: mean difference %.2f, %.2f %% of the bytes differ by more than 25", file, float64(sum)/n, 100*float64(far)/n)
+		t.Errorf("%s: mean difference %.2f, %.2f %% of the bytes differ by more than 25", file, float64(sum)/n,
+			100*float64(far)/n)
 	}
 }

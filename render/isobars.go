@@ -2,8 +2,8 @@ package render
 
 import "math"
 
-// isobars draws lines of equal value, at round values, from the scalar plane; the line of 0 is heavier. It returns taken
-// with the labels' areas added.
+// isobars draws lines of equal value, at round values, from the scalar plane; the line of 0 is heavier. It returns
+// taken with the labels' areas added.
 func (r *Renderer) isobars(s *Scene, c *canvas, pixels float64, taken []area) []area {
 	p := &r.plate
 	factor := r.frame.Layers.Factor
@@ -70,7 +70,7 @@ func (r *Renderer) isobars(s *Scene, c *canvas, pixels float64, taken []area) []
 		}
 		near := false
 		for _, o := range last[q.value] {
-			near = near || math.Abs(o.x-q.x)+math.Abs(o.y-q.y) < 260*pixels
+			near = near || math.Abs(o.x-q.x)+math.Abs(o.y-q.y) < 420*pixels
 		}
 		if near {
 			continue
@@ -82,8 +82,8 @@ func (r *Renderer) isobars(s *Scene, c *canvas, pixels float64, taken []area) []
 	return taken
 }
 
-// slopeAt returns the difference of the plane's values per pixel at i along a step of the given stride, one-sided at jumps
-// of the surface.
+// slopeAt returns the difference of the plane's values per pixel at i along a step of the given stride, one-sided at
+// jumps of the surface.
 func slopeAt(plane []float32, steps []uint8, i, stride int, jump uint8) float64 {
 	a, b, n := i, i, 0.0
 	if steps[i-stride]&jump == 0 && plane[i-stride] == plane[i-stride] {

@@ -18,9 +18,9 @@ type label struct {
 	weak bool
 }
 
-// placeLabels draws the labels where they cover neither one another nor a mark nor what is taken already. Earlier labels
-// have the better choice; one that finds no place is left out, since a heap of labels tells nothing. It
-// returns what is taken: the given areas, the marks, and the labels' places.
+// placeLabels draws the labels where they cover neither one another nor a mark nor what is taken already. Earlier
+// labels have the better choice; one that finds no place is left out, since a heap of labels tells nothing. It returns
+// what is taken: the given areas, the marks, and the labels' places.
 func (c *canvas) placeLabels(labels []label, taken []area, t *typist, col *colors, pixels float64) []area {
 	for _, l := range labels {
 		r := float64(markSize * pixels)

@@ -19,7 +19,8 @@ const markSize = 6.0
 // outline is the signed distance to the outline of a mark of radius one unit r.
 type outline func(dx, dy, r float64) float64
 
-// outlines tells the type of a point by its form. All forms have about the same area and a straight way to be drawn hollow.
+// outlines tells the type of a point by its form. All forms have about the same area and a straight way to be drawn
+// hollow.
 var outlines = [...]outline{
 	NodeMark:       func(dx, dy, r float64) float64 { return round(dx, dy) - r },
 	FocusMark:      drop,
@@ -61,6 +62,10 @@ func (c *canvas) mark(m *Mark, x, y, seen float64, col *colors, pixels float64) 
 		r *= 0.72
 	}
 	form := outlines[min(m.Shape, ProbeMark)]
+	if m.Half { // the upper half stands on the rim
+		whole := form
+		form = func(dx, dy, r float64) float64 { return max(whole(dx, dy, r), dy) }
+	}
 	color := col.ofLine(m.Sense)
 	if m.Sense == NeutralSense {
 		color = col.line
@@ -72,7 +77,9 @@ func (c *canvas) mark(m *Mark, x, y, seen float64, col *colors, pixels float64) 
 		c.shape(x, y, reach+r, col.halo, 0.9*seen, func(dx, dy float64) float64 { return ring(dx, dy) - float64(1.2*pixels) })
 		c.shape(x, y, reach+r, color, seen, ring)
 	}
-	c.shape(x, y, reach, col.halo, 0.95*seen, func(dx, dy float64) float64 { return form(dx, dy, r) - float64(1.4*pixels) })
+	c.shape(x, y, reach, col.halo, 0.95*seen, func(dx, dy float64) float64 {
+		return form(dx, dy, r) - float64(1.4*pixels)
+	})
 	c.shape(x, y, reach, color, seen, func(dx, dy float64) float64 { return form(dx, dy, r) })
 	if m.Sense == SeparationSense {
 		return
@@ -86,10 +93,13 @@ func (c *canvas) mark(m *Mark, x, y, seen float64, col *colors, pixels float64) 
 	})
 }
 
-// hint draws a point that is hidden behind the surface: a faint ring of its size, nothing that could be taken for a mark.
+// hint draws a point that is hidden behind the surface: a faint ring of its size, nothing that could be taken for a
+// mark.
 func (c *canvas) hint(x, y float64, col *colors, pixels float64) {
 	r := float64(markSize * 0.8 * pixels)
 	ring := func(dx, dy float64) float64 { return math.Abs(round(dx, dy)-r) - float64(0.5*pixels) }
-	c.shape(x, y, r+float64(2*pixels), col.halo, 0.35, func(dx, dy float64) float64 { return ring(dx, dy) - float64(0.8*pixels) })
+	c.shape(x, y, r+float64(2*pixels), col.halo, 0.35, func(dx, dy float64) float64 {
+		return ring(dx, dy) - float64(0.8*pixels)
+	})
 	c.shape(x, y, r+float64(2*pixels), col.line, 0.4, ring)
 }

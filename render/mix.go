@@ -7,9 +7,9 @@ import (
 	"shearprint/field/r3"
 )
 
-// Layers is what the pixels of a frame are mixed from, so that a presenter (a shader, or Mix) can change colours, contrast
-// and phase without a new frame. Planes hold one byte per pixel, W x H; each pixel of them covers Factor x Factor pixels
-// of the frame. Overlay has the frame's own size.
+// Layers is what the pixels of a frame are mixed from, so that a presenter (a shader, or Mix) can change colours,
+// contrast and phase without a new frame. Planes hold one byte per pixel, W x H; each pixel of them covers Factor x
+// Factor pixels of the frame. Overlay has the frame's own size.
 //
 // The mix, in bytes, with all divisions rounding down and Cos, Sin used where Animated:
 //
@@ -43,9 +43,9 @@ const (
 	textureLight = 0.84
 )
 
-// contrastCurve returns the texture's effect on light, 128 for the palette's own colour. The curve flattens the extremes: of a normal
-// distribution it makes nearly an even one, which has the most contrast for its range.
-// Without texture light is as it is.
+// contrastCurve returns the texture's effect on light, 128 for the palette's own colour. The curve flattens the
+// extremes: of a normal distribution it makes nearly an even one, which has the most contrast for its range. Without
+// texture light is as it is.
 func contrastCurve(texture bool) (curve [256]uint8) {
 	for i := range curve {
 		if !texture {

@@ -3,8 +3,8 @@ package render
 import "math"
 
 // cellPixels is the size of the noise's cells on the frame [pixels]: fine enough for the texture to show the direction
-// within a few pixels of a critical point; coarse enough that a pixel's middle stands for its cell when the body turns (at
-// 1.5 the texture's correlation between frames of a turntable falls to 0.7, at 2 it is 0.85).
+// within a few pixels of a critical point; coarse enough that a pixel's middle stands for its cell when the body turns
+// (at 1.5 the texture's correlation between frames of a turntable falls to 0.7, at 2 it is 0.85).
 const cellPixels = 2.0
 
 // noiseSize is the deviation of the noise. Smeared along a streamline, cells of two pixels make 1.45 times the contrast
@@ -12,8 +12,8 @@ const cellPixels = 2.0
 const noiseSize = 0.69
 
 // solidNoise returns noise of deviation noiseSize at a place of the body, for cells of the wanted size. The noise is a
-// lattice of cells in space, so that it rides with the surface; two octaves of cells, the next smaller and the next larger
-// than wanted, are blended so that neither appears or leaves abruptly.
+// lattice of cells in space, so that it rides with the surface; two octaves of cells, the next smaller and the next
+// larger than wanted, are blended so that neither appears or leaves abruptly.
 func solidNoise(x, y, z, wanted float64) float32 {
 	bits := math.Float64bits(wanted)
 	// The exponent is the octave, the mantissa how far the way to the next one is.
@@ -33,7 +33,8 @@ func solidNoise(x, y, z, wanted float64) float32 {
 
 // cellHash returns 24 bits that seem random for a cell of an octave.
 func cellHash(x, y, z int64, octave uint64) uint64 {
-	h := uint64(x)*0x9e3779b97f4a7c15 + uint64(y)*0xc2b2ae3d27d4eb4f + uint64(z)*0x165667b19e3779f9 + octave*0x27d4eb2f165667c5
+	h := uint64(x)*0x9e3779b97f4a7c15 + uint64(y)*0xc2b2ae3d27d4eb4f + uint64(z)*0x165667b19e3779f9
+	h += octave * 0x27d4eb2f165667c5
 	h ^= h >> 31
 	h *= 0xd6e8feb86659fd93
 	return h >> 40

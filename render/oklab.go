@@ -2,8 +2,8 @@ package render
 
 import "math"
 
-// lab is a colour in OKLab (Ottosson, A perceptual color space for image processing, 2020): L from 0 to 1, a towards red,
-// b towards yellow.
+// lab is a colour in OKLab (Ottosson, A perceptual color space for image processing, 2020): L from 0 to 1, a towards
+// red, b towards yellow.
 type lab struct{ l, a, b float64 }
 
 // linear is a colour in linear sRGB, 0 to 1 where a screen can show it.

@@ -258,7 +258,8 @@ func TestCometsShowTheirDirection(t *testing.T) {
 // Isobars lie where the value is round: on a sphere with p = z seen from the side, at heights known in advance.
 func TestIsobarsLieAtTheirValues(t *testing.T) {
 	f := mustField(exact.Sphere(1, 20000))
-	s := &Scene{Field: f, Bare: true, Flow: NoFlow, Isobars: 4, Quantity: Pressure, Range: Range{Span: Fixed, Min: -1, Max: 1}}
+	s := &Scene{Field: f, Bare: true, Flow: NoFlow, Isobars: 4, Quantity: Pressure,
+		Range: Range{Span: Fixed, Min: -1, Max: 1}}
 	cam := NamedView("front", f)
 	cam.Ortho = true
 	cam = cam.Fit(f, 1)

@@ -12,14 +12,16 @@ type stop struct{ l, c, h float64 }
 // spine is a palette: a curve through OKLab along evenly spaced stops, with evenly falling lightness.
 type spine []stop
 
-// The palettes are our own. Diverging: a cool arm for negative values (suction) and a warm arm for positive ones, equal in
-// lightness at equal distance from the middle; blue against orange-red stays apart under all three deficiencies of colour
-// vision. Sequential: from pale straw through green-blue to deep plum. Print: grey, since a copier keeps only lightness.
+// The palettes are our own. Diverging: a cool arm for negative values (suction) and a warm arm for positive ones, equal
+// in lightness at equal distance from the middle; blue against orange-red stays apart under all three deficiencies of
+// colour vision. Sequential: from pale straw through green-blue to deep plum. Print: grey, since a copier keeps only
+// lightness.
 var (
 	coolArm = spine{{.94, 0, 230}, {.82, .075, 232}, {.70, .115, 242}, {.565, .135, 254}, {.43, .125, 266}}
 	warmArm = spine{{.94, 0, 75}, {.82, .09, 72}, {.70, .145, 55}, {.565, .165, 38}, {.43, .145, 26}}
-	depth   = spine{{.955, .055, 105}, {.86, .095, 125}, {.75, .105, 160}, {.63, .095, 205}, {.51, .11, 255}, {.38, .125, 305}}
-	grey    = spine{{.98, 0, 0}, {.50, 0, 0}}
+	depth   = spine{{.955, .055, 105}, {.86, .095, 125}, {.75, .105, 160}, {.63, .095, 205}, {.51, .11, 255},
+		{.38, .125, 305}}
+	grey = spine{{.98, 0, 0}, {.50, 0, 0}}
 )
 
 // at returns the colour at t in [0, 1] along the spine.
@@ -72,8 +74,8 @@ func (p palette) color(x, lo, hi float64) rgb {
 // table is a palette ready for mixing: entry 0 is for the surface without a value, 1..255 are lo..hi.
 type table [256]rgb
 
-// table returns the colours between the limits; if bands > 0 in about so many steps of a round width, of which one begins
-// at 0.
+// table returns the colours between the limits; if bands > 0 in about so many steps of a round width, of which one
+// begins at 0.
 func (p palette) table(lo, hi float64, bands int, none rgb) *table {
 	var t table
 	t[0] = none
@@ -115,12 +117,14 @@ type colors struct {
 
 var themeColors = [...]colors{
 	Light: {back: rgb{250, 250, 248}, ink: rgb{24, 28, 34}, halo: rgb{255, 255, 255}, none: rgb{205, 207, 208},
-		separation: rgb{122, 12, 60}, attachment: rgb{0, 84, 66}, line: rgb{52, 56, 64}, stream: rgb{30, 34, 44}, edge: rgb{40, 44, 50}, isobar: rgb{20, 22, 28}},
+		separation: rgb{122, 12, 60}, attachment: rgb{0, 84, 66}, line: rgb{52, 56, 64}, stream: rgb{30, 34, 44},
+		edge: rgb{40, 44, 50}, isobar: rgb{20, 22, 28}},
 	Dark: {back: rgb{21, 24, 29}, ink: rgb{236, 238, 240}, halo: rgb{12, 14, 18}, none: rgb{120, 124, 130},
 		separation: rgb{255, 128, 166}, attachment: rgb{120, 240, 186}, line: rgb{214, 218, 224}, stream: rgb{240, 242, 245},
 		edge: rgb{10, 11, 13}, isobar: rgb{20, 22, 28}},
 	Print: {back: rgb{255, 255, 255}, ink: rgb{0, 0, 0}, halo: rgb{255, 255, 255}, none: rgb{228, 228, 228},
-		separation: rgb{0, 0, 0}, attachment: rgb{0, 0, 0}, line: rgb{60, 60, 60}, stream: rgb{0, 0, 0}, edge: rgb{60, 60, 60}, isobar: rgb{0, 0, 0}},
+		separation: rgb{0, 0, 0}, attachment: rgb{0, 0, 0}, line: rgb{60, 60, 60}, stream: rgb{0, 0, 0},
+		edge: rgb{60, 60, 60}, isobar: rgb{0, 0, 0}},
 }
 
 func (t Theme) colors() *colors { return &themeColors[min(t, Print)] }

@@ -4,8 +4,8 @@ import (
 	"shearprint/field"
 )
 
-// Pick returns the place on the surface under pixel x, y of the last frame; false where there is none. The places that a
-// coarse moving frame shows are moved to the surface itself.
+// Pick returns the place on the surface under pixel x, y of the last frame; false where there is none. The places that
+// a coarse moving frame shows are moved to the surface itself.
 func (r *Renderer) Pick(x, y float64) (field.Loc, bool) {
 	p := &r.plate
 	k := r.frame.Layers.Factor

@@ -11,9 +11,9 @@ const maxSupersample = 4
 // stripPixels is the number of samples that Picture draws at a time: some 40 bytes each.
 const stripPixels = 6_000_000
 
-// Picture draws the scene at w x h pixels for a file, with the given number of samples per pixel each way (1 to 4; 1 gives
-// the pixels of a still Frame). Big pictures are drawn in strips, so that memory stays at 4 bytes per pixel twice and some
-// 240 MB. The picture is premultiplied, as image.RGBA is.
+// Picture draws the scene at w x h pixels for a file, with the given number of samples per pixel each way (1 to 4; 1
+// gives the pixels of a still Frame). Big pictures are drawn in strips, so that memory stays at 4 bytes per pixel twice
+// and some 240 MB. The picture is premultiplied, as image.RGBA is.
 func (r *Renderer) Picture(ctx context.Context, s *Scene, cam Camera, w, h, samples int) (*image.RGBA, error) {
 	if err := checkSize(w, h); err != nil {
 		return nil, err

@@ -31,8 +31,8 @@ type spot struct {
 
 const offFrame = math.MinInt32
 
-// corner is a vertex of a triangle as it is rastered: with its barycentric weights within the triangle of the mesh, both
-// times w, which is near in perspective and 1 in parallel projection.
+// corner is a vertex of a triangle as it is rastered: with its barycentric weights within the triangle of the mesh,
+// both times w, which is near in perspective and 1 in parallel projection.
 type corner struct {
 	x, y    int64
 	near    float64
@@ -76,7 +76,8 @@ func project(b *body, used []int32, l *Lens, zero float64, spots []spot, from, t
 			spots[i].x = offFrame
 			continue
 		}
-		spots[i] = spot{int32(math.Floor(float64((l.cx+x)*subpixel) + 0.5)), int32(math.Floor(float64((l.cy-y)*subpixel) + 0.5)),
+		spots[i] = spot{int32(math.Floor(float64((l.cx+x)*subpixel) + 0.5)),
+			int32(math.Floor(float64((l.cy-y)*subpixel) + 0.5)),
 			float32(near)}
 	}
 }
@@ -171,8 +172,8 @@ func (r *raster) triangle(c *[3]corner, area int64, id int32) {
 	}
 }
 
-// edge returns the edge function from a to b at a pixel's middle and its steps per pixel. Pixels on an edge belong to the
-// triangle whose upper or left edge it is.
+// edge returns the edge function from a to b at a pixel's middle and its steps per pixel. Pixels on an edge belong to
+// the triangle whose upper or left edge it is.
 func edge(a, b *corner, px, py int64) (at, stepX, stepY int64) {
 	dx, dy := b.x-a.x, b.y-a.y
 	at = dx*(py-a.y) - dy*(px-a.x)

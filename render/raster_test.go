@@ -126,8 +126,8 @@ func meet(tri r3.Tri, from, way r3.Vec) (distance, margin float64, ok bool) {
 	return distance, margin, distance > 0 && margin > -0.02
 }
 
-// A camera that stands on a large plate looks over parts in front of and behind it: clipping must give exactly the places
-// that the pixels look at, up to the horizon.
+// A camera that stands on a large plate looks over parts in front of and behind it: clipping must give exactly the
+// places that the pixels look at, up to the horizon.
 func TestClippingAtTheEye(t *testing.T) {
 	f := mustField(exact.Plate(1000, 1000, 8))
 	c := Camera{From: r3.Vec{Z: 2}, At: r3.Vec{Y: 10, Z: 1}, Up: vertical}

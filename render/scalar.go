@@ -78,8 +78,8 @@ func (q Quantity) values(f *field.Field) []float64 {
 type Span uint8
 
 // The spans. ByAuto leaves out the highest and lowest percent, so that a few extreme vertices do not wash out the rest;
-// ByData takes all; ByShare leaves out Range.Share on either side; Symmetric is ByData with 0 in the middle; Fixed takes
-// Range.Min and Max.
+// ByData takes all; ByShare leaves out Range.Share on either side; Symmetric is ByData with 0 in the middle; Fixed
+// takes Range.Min and Max.
 const (
 	ByAuto Span = iota
 	ByData

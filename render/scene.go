@@ -50,7 +50,7 @@ type Mark struct {
 	Shape  Shape
 	Sense  Sense
 	Label  string // drawn beside the mark; "" for none
-	Half   bool   // on a symmetry rim
+	Half   bool   // on a symmetry rim: only the upper half of the mark is drawn
 	Weak   bool   // not resolved, or below the noise floor: drawn smaller and paler
 	Chosen bool   // drawn with a ring around it
 }

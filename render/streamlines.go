@@ -11,8 +11,9 @@ import (
 
 // Streamlines returns limiting streamlines that cover the surface evenly, about apart from one another [length], for
 // Scene.Streamlines. A line is given up where it comes nearer than half of that to another one, and new lines start
-// beside those that exist (Jobard and Lefer, Creating evenly-spaced streamlines of arbitrary density, 1997, carried from
-// the plane to the surface: distances are those in space between places whose normals agree). The error is the context's.
+// beside those that exist (Jobard and Lefer, Creating evenly-spaced streamlines of arbitrary density, 1997, carried
+// from the plane to the surface: distances are those in space between places whose normals agree). The error is the
+// context's.
 func Streamlines(ctx context.Context, f *field.Field, apart float64) ([][]field.Loc, error) {
 	if !(apart > 0) || len(f.Tris) == 0 {
 		return nil, ctx.Err()

@@ -70,8 +70,8 @@ func TestTextureRidesWithTheBody(t *testing.T) {
 	}
 }
 
-// Coming nearer by 4 % a frame, from the whole body to a twelfth of it, no frame differs much from the one before: octaves
-// of the noise are blended, not switched.
+// Coming nearer by 4 % a frame, from the whole body to a twelfth of it, no frame differs much from the one before:
+// octaves of the noise are blended, not switched.
 func TestTextureDoesNotPopWhenZooming(t *testing.T) {
 	f := strained(5000)
 	cam := NamedView("iso", f)

@@ -9,9 +9,8 @@ import (
 	"shearprint/field/r3"
 )
 
-// viewNames lists the named views with the direction from the body to the eye. The stream of the runs comes along +x, so
-// that front looks at the windward side; right and left are the sides seen by one who stands behind the body and looks
-// upstream into the wind's face being "front": the right view looks along +y.
+// viewNames lists the named views with the direction from the body to the eye. The stream of the runs comes along +x:
+// front looks at the windward side, and left and right are the sides of one who looks along the stream.
 var viewNames = []struct {
 	name string
 	back r3.Vec
