@@ -3,13 +3,16 @@ package render_test
 import (
 	"context"
 	"fmt"
+	"os"
 	"slices"
 	"sync"
 	"testing"
 
 	"shearprint/field"
 	"shearprint/field/exact"
+	"shearprint/field/format"
 	"shearprint/field/r3"
+	"shearprint/field/topology"
 	"shearprint/render"
 )
 
@@ -86,4 +89,35 @@ func BenchmarkRecolour(b *testing.B) {
 			}
 		}
 	}
+}
+
+// BenchmarkOverlay draws the demo's moving frame with all its points and lines again and again from new directions, and
+// reports the median of the overlay in milliseconds.
+func BenchmarkOverlay(b *testing.B) {
+	data, err := os.ReadFile("../testdata/runs/radome.ply")
+	if err != nil {
+		b.Fatal(err)
+	}
+	f, err := format.Load("radome.ply", data, format.Options{})
+	if err != nil {
+		b.Fatal(err)
+	}
+	sk, err := topology.Find(context.Background(), f, topology.Options{Lines: true})
+	if err != nil {
+		b.Fatal(err)
+	}
+	scene := render.SceneOf(f, sk)
+	cam := render.NamedView("iso", f).Fit(f, 16.0/9)
+	r := render.NewRenderer()
+	var all []float64
+	for b.Loop() {
+		cam = cam.Orbit(0.02, 0)
+		fr, err := r.Frame(context.Background(), scene, cam, 1280, 720, render.Moving)
+		if err != nil {
+			b.Fatal(err)
+		}
+		all = append(all, float64(fr.Times.Overlay)/1e6)
+	}
+	slices.Sort(all)
+	b.ReportMetric(all[len(all)/2], "overlay-ms")
 }

@@ -93,11 +93,6 @@ func (b *body) vector(v r3.Vec) r3.Vec {
 	return r3.Vec{X: b.turn[0].Dot(v), Y: b.turn[1].Dot(v), Z: b.turn[2].Dot(v)}
 }
 
-// back takes a point of the body into the field's coordinates.
-func (b *body) back(p r3.Vec) r3.Vec {
-	return b.center.AddScaled(p.X, b.turn[0]).AddScaled(p.Y, b.turn[1]).AddScaled(p.Z, b.turn[2])
-}
-
 // lens turns the lens into body coordinates.
 func (b *body) lens(l Lens) Lens {
 	l.right, l.up, l.forward = b.vector(l.right), b.vector(l.up), b.vector(l.forward)

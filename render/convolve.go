@@ -11,13 +11,10 @@ import (
 // a fingertip's width on a screen, and still bends into small foci.
 const kernelLength = 20
 
-// serve is how far [pixels], each way from where it starts, a streamline serves the pixels that it crosses.
-const serve = 40
-
 // smear holds the settings of a convolution.
 type smear struct {
 	half    int // half length of the kernel, in steps of one pixel
-	serve   int
+	serve   int // how far a streamline serves the pixels that it crosses, each way from where it starts
 	animate bool
 	soften  bool
 	// enough is the number of a pixel's four neighbours that streamlines have crossed which makes one of its own

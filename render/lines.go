@@ -4,7 +4,6 @@ package render
 type lineStyle struct {
 	width, halo float64
 	on, off     float64 // dashes; 0 for an unbroken line
-	dots        float64 // distance of the dots that mark an open line; 0 for none
 }
 
 // lineStyles tells separation from attachment by form: unbroken and bold against dashed. Neutral lines are thin.

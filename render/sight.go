@@ -25,12 +25,18 @@ func (r *Renderer) sight(factor float64) *sight {
 // behind something or off the frame. inside tells that it is on the frame, seen or not.
 func (s *sight) see(p r3.Vec) (x, y, seen float64, inside bool) {
 	x, y, z := s.lens.Project(p)
+	seen, inside = s.seeAt(x, y, z)
+	return x, y, seen, inside
+}
+
+// seeAt is see for a place that appears at x, y at the distance z.
+func (s *sight) seeAt(x, y, z float64) (seen float64, inside bool) {
 	if !s.lens.ortho && z <= 0 {
-		return x, y, 0, false
+		return 0, false
 	}
 	i, j := int(math.Floor(x/s.factor)), int(math.Floor(y/s.factor))-s.p.top
 	if i < 0 || j < 0 || i >= s.p.w || j >= s.p.bottom-s.p.top {
-		return x, y, 0, false
+		return 0, false
 	}
 	// The farthest surface among the pixels around: a place on the surface is no farther than that, give or take what the
 	// surface falls away within a pixel.
@@ -53,11 +59,11 @@ func (s *sight) see(p r3.Vec) (x, y, seen float64, inside bool) {
 	if math.IsInf(farthest, 1) { // beside a silhouette
 		farthest = nearest + float64(6*pixel)
 		if math.IsInf(nearest, 1) {
-			return x, y, 1, true
+			return 1, true
 		}
 	}
 	behind := (z - farthest) / pixel
-	return x, y, min(max(3-behind, 0), 1), true
+	return min(max(3-behind, 0), 1), true
 }
 
 // seeLoc is see for a place given as such; a place whose surface faces away is not seen.
@@ -79,19 +85,21 @@ func (s *sight) away(t int32, p r3.Vec) bool {
 	return s.f.Corner(t).Normal().Dot(d) > 0
 }
 
-// curve returns the way along the places on the frame, thinned to steps of about two pixels, with opacity by sight.
+// curve returns the way along the places on the frame, in steps of at least a pixel and a half, with opacity by sight.
 func (s *sight) curve(locs []field.Loc, width float64) []vertex {
-	out := make([]vertex, 0, len(locs))
+	out := make([]vertex, 0, 64)
+	least := 1.5 * s.factor
 	for i, l := range locs {
-		x, y, seen, _ := s.seeLoc(l)
-		v := vertex{x, y, seen, width}
-		if n := len(out); n > 0 && i+1 < len(locs) {
-			a := &out[n-1]
-			if math.Abs(a.x-x)+math.Abs(a.y-y) < 1.5 && a.alpha == seen {
-				continue
-			}
+		p := s.f.Position(l)
+		x, y, z := s.lens.Project(p)
+		if n := len(out); n > 0 && i+1 < len(locs) && math.Abs(out[n-1].x-x)+math.Abs(out[n-1].y-y) < least {
+			continue
 		}
-		out = append(out, v)
+		seen, inside := s.seeAt(x, y, z)
+		if inside && seen > 0 && s.away(l.Tri, p) {
+			seen = 0
+		}
+		out = append(out, vertex{x, y, seen, width})
 	}
 	return out
 }
