@@ -64,6 +64,7 @@ async function startView(canvas) {
   release(Infinity);
   await script("wasm_exec.js");
   const go = new window.Go();
+  stretchTimers(go.importObject.gojs, () => due === 0);
   const answer = await fetch("view.wasm");
   if (!answer.ok) throw new Error(`view.wasm: the server answers ${answer.status}`);
   const { instance } = await WebAssembly.instantiate(await answer.arrayBuffer(), go.importObject);
@@ -89,6 +90,21 @@ async function startView(canvas) {
       release(animated ? Infinity : framesToShow);
       return shown;
     },
+  };
+}
+
+// stretchTimers makes the program's timers rare while idle() holds: Ebitengine looks ten times a second whether its sound
+// should pause, and there is none.
+function stretchTimers(imports, idle) {
+  const name = "runtime.scheduleTimeoutEvent", schedule = imports[name], rare = 5000; // milliseconds
+  imports[name] = (sp) => {
+    const set = window.setTimeout;
+    window.setTimeout = (f, ms) => set(f, idle() ? Math.max(ms, rare) : ms);
+    try {
+      schedule(sp);
+    } finally {
+      window.setTimeout = set;
+    }
   };
 }
 
