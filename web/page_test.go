@@ -7,6 +7,8 @@ import (
 	"fmt"
 	"image/png"
 	"math"
+	"os"
+	"path/filepath"
 	"strings"
 	"testing"
 
@@ -240,6 +242,30 @@ func TestDrop(t *testing.T) {
 	}
 	if v := b.view(); v.Run != "ball.ply" {
 		t.Errorf("after a good file the run is %q", v.Run)
+	}
+}
+
+// The computed runs open, and their books balance.
+func TestComputedRuns(t *testing.T) {
+	files, err := filepath.Glob(filepath.Join("..", "testdata", "runs", "*.ply"))
+	if err != nil || len(files) < 3 {
+		t.Fatalf("%d runs, %v", len(files), err)
+	}
+	b := visit(t, 1280, 720, "?present=cpu")
+	b.until(ready)
+	for _, file := range files {
+		data, err := os.ReadFile(file)
+		if err != nil {
+			t.Fatal(err)
+		}
+		name := filepath.Base(file)
+		b.drop(name, data)
+		b.until(ready + ` && location.hash.includes("run=` + name + `")`)
+		b.settle()
+		b.shot("run-" + strings.TrimSuffix(name, ".ply"))
+		if verdict := eval[string](b, `document.getElementById("verdict").textContent`); !strings.Contains(verdict, "book balances") {
+			t.Errorf("%s: the ledger says %q", name, verdict)
+		}
 	}
 }
 

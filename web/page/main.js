@@ -67,7 +67,8 @@ const open = (opening) => work.during(opening);
 const openFile = (file) => open(async () => openBytes(file.name, file.name, await file.arrayBuffer(), ""));
 
 async function openFromAddress() {
-  const link = location.hash.slice(1);
+  const dark = !location.hash && matchMedia("(prefers-color-scheme: dark)").matches;
+  const link = dark ? "theme=dark" : location.hash.slice(1);
   const list = await (await fetch("runs.json")).json();
   const name = new URLSearchParams(link).get("run") || list.first;
   const answer = await work.fetch(`runs/${encodeURIComponent(name)}`, `Loading ${name}`);
@@ -111,6 +112,11 @@ const length = (a) => Math.max(1e-30, Math.hypot(...a));
 
 new Stage(el("stage"), {
   gesture: (g) => engine.tell("gesture", g),
+  leave: () => card.hide(true),
+  middle: () => {
+    const r = run && !el("ledger").hidden && innerWidth > 760 ? el("ledger").getBoundingClientRect().right : 0;
+    return [(r + innerWidth) / 2, (el("head").getBoundingClientRect().bottom + el("key").getBoundingClientRect().top) / 2];
+  },
   whole: () => engine.tell("look", { name: "iso" }),
   click: (x, y) => run && work.quietly(async () => {
     el("stage").focus({ preventScroll: true });

@@ -6,7 +6,8 @@ const keyTurn = 40; // pixels of dragging that an arrow key stands for
 export class Stage {
   #el; #do; #pointers = new Map(); #moved = 0; #spread = 0;
 
-  // actions: gesture({kind, ...}), click(x, y) with a place in CSS pixels, whole() to show the whole run again.
+  // actions: gesture({kind, ...}), click(x, y) with a place in CSS pixels, whole() to show the whole run again,
+  // leave() to put the chosen place away.
   constructor(el, actions) {
     this.#el = el;
     this.#do = actions;
@@ -75,7 +76,8 @@ export class Stage {
     } else if (e.key === "+" || e.key === "=") this.#tell("zoom", { factor: 1.2, x, y });
     else if (e.key === "-" || e.key === "_") this.#tell("zoom", { factor: 1 / 1.2, x, y });
     else if (e.key === "Home") this.#do.whole();
-    else if (e.key === "Enter") this.#do.click(x, y);
+    else if (e.key === "Escape") this.#do.leave();
+    else if (e.key === "Enter") this.#do.click(...this.#do.middle());
     else return;
     e.preventDefault();
   }

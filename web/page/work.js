@@ -89,7 +89,7 @@ export class Work {
   }
 
   complain(text) {
-    el("alert-text").textContent = text[0].toUpperCase() + text.slice(1);
+    el("alert-text").textContent = text; // may begin with a file's name
     el("alert-box").hidden = false;
     root.dataset.state = "error";
   }
