@@ -298,6 +298,32 @@ func TestPresentersAgree(t *testing.T) {
 	t.Logf("the largest difference is %d of 255", worst)
 }
 
+// The texture moves along the flow when asked to, through both presenters, and then rests again.
+func TestMotion(t *testing.T) {
+	for _, present := range []string{"cpu", "gpu"} {
+		b := visit(t, 700, 500, "?present="+present)
+		b.until(ready)
+		eval[any](b, `shearprint.call("view", {motion: true})`)
+		b.settle()
+		moves := false
+		first := b.capture()
+		for range 50 {
+			if moves = !bytes.Equal(first, b.capture()); moves {
+				break
+			}
+		}
+		if !moves {
+			t.Errorf("%s: the texture stands", present)
+		}
+		b.shot("motion-" + present)
+		eval[any](b, `shearprint.call("view", {motion: false})`)
+		b.settle()
+		if !bytes.Equal(b.capture(), b.capture()) {
+			t.Errorf("%s: the texture does not rest", present)
+		}
+	}
+}
+
 // capture returns the tab's pixels.
 func (b *tab) capture() []byte {
 	b.Helper()

@@ -185,13 +185,19 @@ func (p *painter) paint() bool {
 		stop()
 		return done || len(p.tasks) > 0
 	case p.scene.Animate && !p.size.Layers: // the page's view moves layers by itself
+		p.tellSettled()
 		return p.flowOn(w, h)
 	}
+	p.tellSettled()
+	return false
+}
+
+// tellSettled answers those that wait for the finished picture.
+func (p *painter) tellSettled() {
 	for _, r := range p.waiters {
 		p.post(session.Reply{ID: r.ID}, nil, js.Undefined())
 	}
 	p.waiters = nil
-	return false
 }
 
 // frame makes a frame and posts it.

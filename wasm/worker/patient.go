@@ -36,7 +36,7 @@ func pause() {
 // same, but browsers make them wait for 4 ms.
 var (
 	channel = js.Global().Get("MessageChannel").New()
-	arrived = make(chan struct{}, 1)
+	arrived = make(chan struct{}, 64) // more than ever wait at once
 )
 
 func init() {
