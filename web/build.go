@@ -123,33 +123,49 @@ func moduleRoot(ctx context.Context) (string, error) {
 	return "", errors.New("the sources of Shearprint are not here; run it inside its source folder, as go run ./cmd/shearprint")
 }
 
+// sourceFolders hold all of the module that the programs are compiled from, embedded files included.
+var sourceFolders = []string{"field", "render", "wasm"}
+
 // sourceSum is a digest of all that the programs are compiled from.
 func sourceSum(root string) (string, error) {
 	h := sha256.New()
 	fmt.Fprintln(h, runtime.Version())
-	err := filepath.WalkDir(root, func(path string, d fs.DirEntry, err error) error {
-		name := d.Name()
-		switch {
-		case err != nil:
-			return err
-		case d.IsDir() && path != root && (strings.HasPrefix(name, ".") || name == "testdata" || name == "cmd" || name == "web"):
-			return filepath.SkipDir
-		case d.IsDir() || strings.HasSuffix(name, "_test.go"):
-			return nil
-		case !strings.HasSuffix(name, ".go") && name != "go.mod" && name != "go.sum":
-			return nil
-		}
+	add := func(path string) error {
 		file, err := os.Open(path)
 		if err != nil {
 			return err
 		}
 		defer file.Close()
-		rel, _ := filepath.Rel(root, path)
+		rel, err := filepath.Rel(root, path)
+		if err != nil {
+			return err
+		}
 		fmt.Fprintln(h, filepath.ToSlash(rel))
 		_, err = io.Copy(h, file)
 		return err
-	})
-	return hex.EncodeToString(h.Sum(nil))[:20], err
+	}
+	for _, name := range []string{"go.mod", "go.sum"} {
+		if err := add(filepath.Join(root, name)); err != nil {
+			return "", err
+		}
+	}
+	for _, folder := range sourceFolders {
+		err := filepath.WalkDir(filepath.Join(root, folder), func(path string, d fs.DirEntry, err error) error {
+			switch {
+			case err != nil:
+				return err
+			case d.IsDir() && d.Name() == "testdata":
+				return filepath.SkipDir
+			case d.IsDir() || strings.HasSuffix(d.Name(), "_test.go"):
+				return nil
+			}
+			return add(path)
+		})
+		if err != nil {
+			return "", err
+		}
+	}
+	return hex.EncodeToString(h.Sum(nil))[:20], nil
 }
 
 func compile(ctx context.Context, root string, p Program, to string) error {

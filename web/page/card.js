@@ -26,7 +26,7 @@ export class Card {
     const j = point ?? probe;
     const rows = [
       ["Position", `${probe.position.map((x) => number(x)).join(", ")} ${L}`],
-      ["Wall shear |tau|", number(probe.tau_magnitude, T)],
+      ["Wall shear |tau|", point ? `0 by the fit, ${number(probe.tau_magnitude, T)} interpolated` : number(probe.tau_magnitude, T)],
       ["tau", `${probe.tau.map((x) => number(x)).join(", ")} ${T}`],
       ["Pressure p", probe.p === null || probe.p === undefined ? "not in this run" : number(probe.p, P)],
       ["Coefficient cp", probe.cp === null || probe.cp === undefined ? "not in this run" : number(probe.cp)],
