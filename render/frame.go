@@ -83,8 +83,9 @@ func (q Quality) factor(w, h int) int {
 	return k
 }
 
-// Frame draws the scene. The frame's buffers are used again by the next call. The error is that of the context, or
-// tells that the size or the scene is not usable; the last frame is then lost.
+// Frame draws the scene. What has not changed since the last frame is kept: marks, lines and streamlines that are to be
+// drawn anew come in new slices. The frame's buffers are used again by the next call. The error is that of the context,
+// or tells that the size or the scene is not usable; the last frame is then lost.
 func (r *Renderer) Frame(ctx context.Context, s *Scene, cam Camera, w, h int, q Quality) (*Frame, error) {
 	if err := checkSize(w, h); err != nil {
 		return nil, err
@@ -105,10 +106,14 @@ func (r *Renderer) Frame(ctx context.Context, s *Scene, cam Camera, w, h int, q 
 	l := &f.Layers
 	l.Factor = k
 	start := time.Now()
-	l.Overlay = fitted(l.Overlay, 4*w*h)
-	r.over.reset(l.Overlay, w, h)
-	if err := r.overlay(ctx, s, &r.over, float64(k)); err != nil {
-		return nil, err
+	if key := overlayKeyOf(s, w, h, q); r.kept.overlay != key {
+		r.kept.overlay = overlayKey{}
+		l.Overlay = fitted(l.Overlay, 4*w*h)
+		r.over.reset(l.Overlay, w, h)
+		if err := r.overlay(ctx, s, &r.over, float64(k)); err != nil {
+			return nil, err
+		}
+		r.kept.overlay = key
 	}
 	start = f.Times.lap(&f.Times.Overlay, start)
 	f.Pix = fitted(f.Pix, 4*w*h)

@@ -203,6 +203,26 @@ func TestColoursCostNoConvolution(t *testing.T) {
 	}
 }
 
+// A new phase draws no overlay anew; other marks do.
+func TestPhaseCostsNoOverlay(t *testing.T) {
+	f := strained(3000)
+	c := NamedView("iso", f)
+	r := NewRenderer()
+	s := marked(f)
+	s.Animate = true
+	fr := shoot(t, r, s, c, 200, 200, Still)
+	fr.Layers.Overlay[0] = 77
+	s.Phase = 0.4
+	if fr = shoot(t, r, s, c, 200, 200, Still); fr.Layers.Overlay[0] != 77 {
+		t.Error("the overlay was drawn anew")
+	}
+	s.Marks = append([]Mark(nil), s.Marks[:3]...)
+	got := bytes.Clone(shoot(t, r, s, c, 200, 200, Still).Pix)
+	if want := shoot(t, NewRenderer(), s, c, 200, 200, Still).Pix; !bytes.Equal(got, want) {
+		t.Error("with fewer marks: other pixels than a fresh frame")
+	}
+}
+
 func TestPick(t *testing.T) {
 	f := strained(200_000) // enough for moving frames to take the coarser mesh
 	c := NamedView("iso", f)

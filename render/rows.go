@@ -27,6 +27,7 @@ func (r *Renderer) Rows(ctx context.Context, s *Scene, cam Camera, w, h, top, bo
 	start := time.Now()
 	l := &f.Layers
 	l.Factor = 1
+	r.kept.overlay = overlayKey{}
 	l.Overlay = fitted(l.Overlay, 4*w*f.H)
 	clear(l.Overlay)
 	f.Pix = fitted(f.Pix, 4*w*f.H)
@@ -56,6 +57,7 @@ func (r *Renderer) Overlay(ctx context.Context, s *Scene, cam Camera, w, h int) 
 	}
 	l := &f.Layers
 	l.Factor = k
+	r.kept.overlay = overlayKey{}
 	l.Overlay = fitted(l.Overlay, 4*w*h)
 	r.over.reset(l.Overlay, w, h)
 	return l.Overlay, r.overlay(ctx, s, &r.over, float64(k))

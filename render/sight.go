@@ -88,7 +88,7 @@ func (s *sight) away(t int32, p r3.Vec) bool {
 // curve returns the way along the places on the frame, in steps of at least a pixel and a half, with opacity by sight.
 func (s *sight) curve(locs []field.Loc, width float64) []vertex {
 	out := make([]vertex, 0, 64)
-	least := 1.5 * s.factor
+	least := float64(1.5 * s.factor)
 	for i, l := range locs {
 		p := s.f.Position(l)
 		x, y, z := s.lens.Project(p)

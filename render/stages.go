@@ -15,6 +15,7 @@ type stages struct {
 	surface surfaceKey
 	texture textureKey
 	scalar  scalarKey
+	overlay overlayKey
 }
 
 type rasterKey struct {
@@ -40,6 +41,37 @@ type textureKey struct {
 type scalarKey struct {
 	rasterKey
 	quantity Quantity
+}
+
+// overlayKey is what an overlay depends on besides the raster. Marks and lines are told by where their slices lie.
+type overlayKey struct {
+	w, h        int
+	quality     Quality
+	quantity    Quantity
+	limits      Range
+	bands       int
+	isobars     int
+	theme       Theme
+	flow        Flow
+	scale       float64
+	bare        bool
+	title       string
+	marks       *Mark
+	lines       *Line
+	streamlines *[]field.Loc
+	counts      [3]int
+}
+
+func overlayKeyOf(s *Scene, w, h int, q Quality) overlayKey {
+	return overlayKey{w, h, q, s.Quantity, s.Range, s.Bands, s.Isobars, s.Theme, s.Flow, s.Scale, s.Bare, s.Title,
+		first(s.Marks), first(s.Lines), first(s.Streamlines), [3]int{len(s.Marks), len(s.Lines), len(s.Streamlines)}}
+}
+
+func first[T any](s []T) *T {
+	if len(s) == 0 {
+		return nil
+	}
+	return &s[0]
 }
 
 type rangeKey struct {

@@ -22,20 +22,38 @@ func (c *canvas) stroke(curve []vertex, extra float64) (box bounds) {
 		y0, y1 := max(int(math.Floor(min(a.y, b.y)-reach)), 0), min(int(math.Ceil(max(a.y, b.y)+reach)), c.h-1)
 		dx, dy := b.x-a.x, b.y-a.y
 		length2 := float64(dx*dx) + float64(dy*dy)
+		inverse := 0.0
+		if length2 > 0 {
+			inverse = 1 / length2
+		}
+		far := float64(reach * reach)
 		for y := y0; y <= y1; y++ {
+			row := c.cover[y*c.w : (y+1)*c.w]
+			py := float64(y) + 0.5 - a.y
 			for x := x0; x <= x1; x++ {
-				px, py := float64(x)+0.5-a.x, float64(y)+0.5-a.y
-				t := 0.0
-				if length2 > 0 {
-					t = min(max((float64(px*dx)+float64(py*dy))/length2, 0), 1)
+				px := float64(x) + 0.5 - a.x
+				t := (float64(px*dx) + float64(py*dy)) * inverse
+				if t < 0 { // min and max are calls in the browser
+					t = 0
+				} else if t > 1 {
+					t = 1
 				}
 				ex, ey := px-float64(t*dx), py-float64(t*dy)
-				d := math.Sqrt(float64(ex*ex)+float64(ey*ey)) - (a.width+float64(t*(b.width-a.width)))/2 - extra
-				if d >= 0.5 {
+				square := float64(ex*ex) + float64(ey*ey)
+				if square >= far {
 					continue
 				}
-				i := y*c.w + x
-				c.cover[i] = max(c.cover[i], uint8(coverage(d, a.alpha+float64(t*(b.alpha-a.alpha)))))
+				k := 0.5 - math.Sqrt(square) + (a.width+float64(t*(b.width-a.width)))/2 + extra
+				if k <= 0 {
+					continue
+				}
+				if k > 1 {
+					k = 1
+				}
+				cover := uint8(float64(k*(a.alpha+float64(t*(b.alpha-a.alpha)))*255) + 0.5)
+				if cover > row[x] {
+					row[x] = cover
+				}
 			}
 		}
 		if x0 <= x1 && y0 <= y1 {
