@@ -341,6 +341,11 @@ func TestPicture(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
+	if dir := os.Getenv("SHEARPRINT_SHOTS"); dir != "" {
+		if err := os.WriteFile(filepath.Join(dir, "picture.png"), data, 0o644); err != nil {
+			t.Fatal(err)
+		}
+	}
 	img, err := png.Decode(bytes.NewReader(data))
 	if err != nil {
 		t.Fatal(err)
@@ -360,8 +365,12 @@ func TestWrongMediaType(t *testing.T) {
 func TestCancel(t *testing.T) {
 	data := ply(t, exact.Cases()[0].Raw(300_000))
 	b := visit(t, 800, 600, "?present=cpu", web.Run{Name: "ball.ply", Data: func() ([]byte, error) { return data, nil }})
-	b.until(`document.getElementById("stage-name").textContent.startsWith("Finding") && !document.getElementById("progress").hidden`)
-	b.do(chromedp.Evaluate(`document.getElementById("cancel").click()`, nil))
+	eval[any](b, `new Promise((done) => { const look = setInterval(() => {
+		if (!document.getElementById("stage-name").textContent.startsWith("Finding")) return;
+		clearInterval(look);
+		document.getElementById("cancel").click();
+		done();
+	}, 1); })`)
 	b.until(ready)
 	if rows := eval[int](b, `document.querySelectorAll("#book tbody tr").length`); rows != 0 {
 		t.Fatalf("after cancelling the ledger has %d rows", rows)

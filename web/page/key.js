@@ -76,8 +76,8 @@ function niceStep(x) {
 // What the marks and lines of a picture mean; the forms are those of package render.
 const signs = [
   ["node", "node"], ["focus", "focus"], ["saddle", "saddle"], ["degenerate", "degenerate"],
-  ["filled", "filled: separation"], ["hollow", "hollow: attachment"],
-  ["unbroken", "separation line"], ["dashed", "attachment line"],
+  ["filled", "filled: separation"], ["hollow", "hollow: attachment"], ["half", "half: neutral"], ["thin", "line of neither"],
+  ["unbroken", "separation line"], ["dashed", "attachment line"], ["dotted", "open line"], ["doubt", "in doubt"],
 ];
 
 const red = "var(--separation)", green = "var(--attachment)";
@@ -89,6 +89,16 @@ const shapes = {
   degenerate: () => [draw("rect", { x: 5, y: 3, width: 8, height: 8, fill: "currentColor" })],
   filled: () => [draw("circle", { cx: 9, cy: 7, r: 4.4, fill: red })],
   hollow: () => [draw("circle", { cx: 9, cy: 7, r: 3.8, fill: "var(--field)", stroke: green, "stroke-width": 1.8 })],
+  half: () => [draw("circle", { cx: 9, cy: 7, r: 3.8, fill: "var(--field)", stroke: "currentColor", "stroke-width": 1.6 }),
+    draw("path", { d: "M9 3.2a3.8 3.8 0 0 0 0 7.6Z", fill: "currentColor" })],
+  thin: () => [draw("line", { x1: 0, x2: 18, y1: 7, y2: 7, stroke: "currentColor", "stroke-width": 1 })],
+  dotted: () => [draw("line", { x1: 0, x2: 18, y1: 7, y2: 7, stroke: red, "stroke-width": 1.8 }),
+    draw("circle", { cx: 5, cy: 7, r: 2.4, fill: red }), draw("circle", { cx: 13, cy: 7, r: 2.4, fill: red })],
+  doubt: () => {
+    const q = draw("text", { x: 9, y: 11.5, "text-anchor": "middle", "font-size": 12, fill: "currentColor" });
+    q.textContent = "?";
+    return [q];
+  },
   unbroken: () => [draw("line", { x1: 0, x2: 18, y1: 7, y2: 7, stroke: red, "stroke-width": 2.2 })],
   dashed: () => [draw("line", { x1: 0, x2: 18, y1: 7, y2: 7, stroke: green, "stroke-width": 2.2, "stroke-dasharray": "5 2.5" })],
 };
