@@ -13,6 +13,11 @@ const (
 	steadyRatio = 0.2
 	// minTurns is the number of returns that must contract before their limit is believed.
 	minTurns = 3
+	// mostTurns is the number of returns after which a curve that winds without end is given up: its spiral changes by less
+	// than a hundredth of itself in a turn, which no mesh and no computed flow resolves.
+	mostTurns = 500
+	// spotEdges is the length of the last turn, in longest edges, up to which such a curve winds around one spot.
+	spotEdges = 8
 )
 
 // returned notes the crossing of half-edge h and tells whether the curve has closed on itself. The half-edge is
@@ -37,9 +42,14 @@ func (w *walk) returned(h int32, share float64) bool {
 		}
 	}
 	w.last[h] = now
-	if near {
+	switch {
+	case near:
 		w.path.Loop, w.path.Drift = old.at, math.Abs(now.miss)
 		w.finish(Cycle)
+	case now.turns >= mostTurns && w.s-w.path.S[old.at] < float64(spotEdges*w.long):
+		w.finish(Stuck)
+	case now.turns >= mostTurns:
+		w.finish(TooLong)
 	}
-	return near
+	return w.done
 }

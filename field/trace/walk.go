@@ -34,8 +34,11 @@ const (
 	// maxHops bounds the edges that one curve may cross. A curve of the greatest length on a mesh of four million
 	// triangles crosses some ten thousand.
 	maxHops = 400_000
-	// maxSteps bounds the steps of a curve that winds slowly into a focus.
+	// maxSteps bounds the steps of a curve.
 	maxSteps = 400_000
+	// cellSteps bounds the steps within one triangle: passing takes some ten, a curve that takes thousands winds around
+	// a zero of tau in it.
+	cellSteps = 3000
 	// idleHops edges crossed within idleLength of a longest edge mean that the curve runs on the spot around a vertex.
 	idleHops   = 200
 	idleLength = 1e-6
@@ -126,6 +129,7 @@ func (w *walk) inSpace(p r3.Vec2) r3.Vec { return w.f.Corner(w.tri).At(w.bary(p)
 // flowThrough integrates to the edge of the cell and returns the number of the edge crossed; -1 where the curve ends.
 func (w *walk) flowThrough() int32 {
 	k1, ok := w.unit(w.p)
+	entered := w.steps
 	for ok {
 		h := w.step * w.long
 		next, k4, err, fine := w.rungeKutta(h, k1)
@@ -168,6 +172,10 @@ func (w *walk) flowThrough() int32 {
 		}
 		if edge >= 0 {
 			return edge
+		}
+		if w.steps-entered > cellSteps {
+			w.finish(Stuck)
+			return -1
 		}
 		if k1.Dot(k4) <= 0 { // an accurate step that turns back has gone over a zero
 			break
