@@ -176,6 +176,30 @@ func TestTextureStopsAtJumps(t *testing.T) {
 	}
 }
 
+// In a vortex the way is a circle: after a whole turn and more it is where it was, to within a pixel or two, also where
+// the circle is small.
+func TestWalkKeepsToCircles(t *testing.T) {
+	const w, h = 200, 200
+	p := whole(w, h, func(x, y float64) (float64, float64) { return -(y - 100), x - 100 })
+	for _, radius := range []float64{5, 10, 25, 60} {
+		for _, sign := range []float32{1, -1} {
+			at := make([]int32, 60)
+			start := 100*w + 100 + int(radius)
+			if n := p.walk(at, start, sign); n != len(at) {
+				t.Fatalf("radius %g: the way ends after %d steps", radius, n)
+			}
+			for k, i := range at {
+				r := r3.Hypot(float64(int(i)%w)+0.5-100, float64(int(i)/w)+0.5-100)
+				// Half a pixel for the start and for the end each, and what a step errs: the third power of its angle.
+				if allowed := 1.2 + float64(k)*0.5/(radius*radius); math.Abs(r-radius) > allowed {
+					t.Errorf("radius %g, sign %g: %.2f after %d steps", radius, sign, r, k+1)
+					break
+				}
+			}
+		}
+	}
+}
+
 func TestPhaseMovesThePatternAlongTheFlow(t *testing.T) {
 	const w, h = 400, 60
 	p := whole(w, h, func(x, y float64) (float64, float64) { return 1, 0 })

@@ -70,35 +70,27 @@ func tent(value, box, sum []float32, half int) {
 }
 
 // walk fills at with the pixels along the direction from pixel i in steps of one pixel, and returns their number: all,
-// or fewer where the surface or the direction ends. Steps are by the midpoint rule; where the direction turns by more
-// than half a right angle within half a step, the step is halved.
+// or fewer where the surface or the direction ends. Steps are by the two-step method of Adams and Bashforth, which is
+// of second order with one look at the direction a step; where the direction turns by more than half a right angle from
+// one step to the next, the direction itself is taken.
 func (p *plate) walk(at []int32, i int, sign float32) int {
 	w, top := p.w, p.top
 	// Rows are counted from the frame's top, so that rounding is the same in every strip.
 	x, y := float32(i%w)+0.5, float32(i/w+top)+0.5
 	right, upper, lower := float32(w), float32(top), float32(p.bottom)
+	before := p.dirs[i]
 	for k := range at {
 		d := p.dirs[i]
-		h := float32(0.5 * sign)
-		mx, my := x+float32(h*d.x), y+float32(h*d.y)
-		if !(mx >= 0 && mx < right && my >= upper && my < lower) {
+		ex, ey := d.x, d.y
+		if turn := float32(d.x*before.x) + float32(d.y*before.y); turn > 0.7 {
+			ex += 0.5 * (d.x - before.x)
+			ey += 0.5 * (d.y - before.y)
+		} else if turn < -0.5 { // two flows meet
 			return k
 		}
-		e := p.dirs[(int(my)-top)*w+int(mx)]
-		turn := float32(d.x*e.x) + float32(d.y*e.y)
-		if turn < 0.7 {
-			if turn == 0 && e == (direction{}) {
-				e = d
-			} else {
-				if turn < -0.5 { // two flows meet
-					return k
-				}
-				e = d
-				h *= 0.5
-			}
-		}
-		x += float32(2 * h * e.x)
-		y += float32(2 * h * e.y)
+		before = d
+		x += float32(sign * ex)
+		y += float32(sign * ey)
 		if !(x >= 0 && x < right && y >= upper && y < lower) {
 			return k
 		}
