@@ -26,7 +26,6 @@ var golden = []struct{ name, args string }{
 	{"inspect-hut", "inspect ../../testdata/runs/hut.ply --json"},
 	{"topology-radome", "topology ../../testdata/runs/radome.ply"},
 	{"topology-pod", "topology ../../testdata/runs/pod.ply"},
-	{"topology-hut", "topology ../../testdata/runs/hut.ply --min-robustness 1%"},
 	{"probe-pod", "probe ../../testdata/runs/pod.ply --at 0,0,0.3"},
 	{"loop-radome", "loop ../../testdata/runs/radome.ply --through 1.2,-0.4,0;1.2,0.6,0;0.8,0.6,0;0.8,-0.4,0"},
 	{"error-missing", "topology missing.ply"},
