@@ -15,6 +15,7 @@ import (
 	"path/filepath"
 	"runtime"
 	"strings"
+	"time"
 
 	"github.com/klauspost/compress/gzip"
 )
@@ -91,8 +92,25 @@ func Build(ctx context.Context, progress func(string)) (string, error) {
 	if err := os.Rename(work, dir); err != nil && !complete(dir) {
 		return "", fmt.Errorf("%s: %w", dir, err)
 	}
+	prune(filepath.Dir(dir))
 	progress("the browser's programs are ready")
 	return dir, nil
+}
+
+// keepFor is how long builds of other sources stay: a server that was started from them may still be running.
+const keepFor = 14 * 24 * time.Hour
+
+// prune removes builds that nobody has made for long. What cannot be removed stays: it only takes room.
+func prune(cache string) {
+	folders, err := os.ReadDir(cache)
+	if err != nil {
+		return
+	}
+	for _, f := range folders {
+		if info, err := f.Info(); err == nil && f.IsDir() && time.Since(info.ModTime()) > keepFor {
+			os.RemoveAll(filepath.Join(cache, f.Name()))
+		}
+	}
 }
 
 // complete tells whether the folder holds all that the page needs.

@@ -11,6 +11,7 @@ import (
 	"path/filepath"
 	"strings"
 	"testing"
+	"time"
 
 	"shearprint/web"
 )
@@ -118,7 +119,17 @@ func TestBuild(t *testing.T) {
 	if testing.Short() {
 		t.Skip("compiling takes too long for -short")
 	}
-	t.Setenv("XDG_CACHE_HOME", t.TempDir())
+	cache := t.TempDir()
+	t.Setenv("XDG_CACHE_HOME", cache)
+	old, recent := filepath.Join(cache, "shearprint", "old"), filepath.Join(cache, "shearprint", "recent")
+	for dir, age := range map[string]time.Duration{old: 60 * 24 * time.Hour, recent: time.Hour} {
+		if err := os.MkdirAll(dir, 0o755); err != nil {
+			t.Fatal(err)
+		}
+		if err := os.Chtimes(dir, time.Time{}, time.Now().Add(-age)); err != nil {
+			t.Fatal(err)
+		}
+	}
 	if out, err := goCache(); err == nil { // the compiler's own cache must not move with the user's
 		t.Setenv("GOCACHE", out)
 	}
@@ -126,6 +137,12 @@ func TestBuild(t *testing.T) {
 	dir, err := web.Build(context.Background(), func(s string) { told = append(told, s) })
 	if err != nil {
 		t.Fatal(err)
+	}
+	if _, err := os.Stat(old); err == nil {
+		t.Error("a build of long ago stays")
+	}
+	if _, err := os.Stat(recent); err != nil {
+		t.Error("a build of today is gone")
 	}
 	if len(told) < 3 {
 		t.Errorf("the build told %q", told)
