@@ -38,9 +38,9 @@ type Layers struct {
 // textureContrast is the change of light that the texture makes: the palette's colours stay recognisable at 0.5, the
 // lines stay legible above 0.3.
 const (
-	textureContrast = 0.36
+	textureContrast = 0.27
 	// textureLight is the light of the texture's middle: its bright lines then just reach the palette's own colour.
-	textureLight = 0.84
+	textureLight = 0.90
 )
 
 // contrastCurve returns the texture's effect on light, 128 for the palette's own colour. The curve flattens the

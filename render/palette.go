@@ -13,14 +13,14 @@ type stop struct{ l, c, h float64 }
 type spine []stop
 
 // The palettes are our own. Diverging: a cool arm for negative values (suction) and a warm arm for positive ones, equal
-// in lightness at equal distance from the middle; blue against orange-red stays apart under all three deficiencies of
-// colour vision. Sequential: from pale straw through green-blue to deep plum. Print: grey, since a copier keeps only
+// in lightness at equal distance from the middle; petrol against ochre and umber stays apart under all three deficiencies
+// of colour vision. Sequential: from straw through moss to a deep sea green. Print: grey, since a copier keeps only
 // lightness.
 var (
-	coolArm = spine{{.94, 0, 230}, {.82, .075, 232}, {.70, .115, 242}, {.565, .135, 254}, {.43, .125, 266}}
-	warmArm = spine{{.94, 0, 75}, {.82, .09, 72}, {.70, .145, 55}, {.565, .165, 38}, {.43, .145, 26}}
-	depth   = spine{{.955, .055, 105}, {.86, .095, 125}, {.75, .105, 160}, {.63, .095, 205}, {.51, .11, 255},
-		{.38, .125, 305}}
+	coolArm = spine{{.94, 0, 193}, {.82, .07, 195}, {.70, .098, 200}, {.565, .098, 212}, {.43, .092, 232}}
+	warmArm = spine{{.94, 0, 85}, {.82, .10, 82}, {.70, .135, 70}, {.565, .132, 55}, {.43, .11, 42}}
+	depth   = spine{{.955, .05, 98}, {.86, .095, 112}, {.75, .11, 130}, {.63, .105, 147}, {.51, .088, 163},
+		{.38, .068, 190}}
 	grey = spine{{.98, 0, 0}, {.50, 0, 0}}
 )
 
