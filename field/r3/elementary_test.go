@@ -54,7 +54,8 @@ func TestWrapRange(t *testing.T) {
 
 func TestAtan2Edges(t *testing.T) {
 	for _, c := range []struct{ y, x, want float64 }{
-		{0, 0, 0}, {0, -1, math.Pi}, {math.Copysign(0, -1), -1, math.Pi}, {1, 0, math.Pi / 2}, {-1, 0, -math.Pi / 2}, {1, 1, math.Pi / 4}, {5e-324, -5e-324, 3 * math.Pi / 4},
+		{0, 0, 0}, {0, -1, math.Pi}, {math.Copysign(0, -1), -1, math.Pi}, {1, 0, math.Pi / 2}, {-1, 0, -math.Pi / 2},
+		{1, 1, math.Pi / 4}, {5e-324, -5e-324, 3 * math.Pi / 4},
 	} {
 		if got := r3.Atan2(c.y, c.x); math.Abs(got-c.want) > 1e-15 {
 			t.Errorf("Atan2(%g, %g) = %.17g, want %.17g", c.y, c.x, got, c.want)
