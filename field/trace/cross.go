@@ -76,9 +76,9 @@ func (w *walk) enterAt(g int32, share float64) {
 // side is one triangle beside an edge along which a curve slides, with tau at the edge's ends: along the edge, and
 // away from it into the triangle.
 type side struct {
-	h            int32
-	along, away  [2]float64
-	tail, length float64
+	h           int32
+	along, away [2]float64
+	length      float64
 }
 
 // sideOf looks at half-edge h from its own triangle; forward tells whether the edge is measured from the tail of h.
