@@ -35,11 +35,20 @@ func (b *builder) addBasins(ctx context.Context) error {
 		}
 	}
 	ends := make([][2]int, len(middles))
+	paths := make([]trace.Both, len(middles))
 	if err := inBlocks(ctx, len(middles), 1, func(from, to int) {
 		for i := from; i < to; i++ {
-			ends[i] = b.endsFrom(ctx, middles[i])
+			l := field.Loc{Tri: middles[i], Bary: [3]float64{1. / 3, 1. / 3, 1. / 3}}
+			paths[i] = b.t.Through(ctx, l, trace.Options{})
 		}
 	}); err != nil {
+		return err
+	}
+	for i := range paths {
+		ends[i] = b.endsOf(ctx, &paths[i])
+		paths[i] = trace.Both{}
+	}
+	if err := ctx.Err(); err != nil {
 		return err
 	}
 	b.fill(piece)
@@ -129,9 +138,10 @@ func (b *builder) flood(t, number int32, cut []bool, piece []int32) int32 {
 	return queue[len(queue)/2]
 }
 
-// endsFrom follows the streamline through the middle of triangle t both ways.
-func (b *builder) endsFrom(ctx context.Context, t int32) [2]int {
-	p := b.t.Through(ctx, field.Loc{Tri: t, Bary: [3]float64{1. / 3, 1. / 3, 1. / 3}}, trace.Options{})
+// endsOf tells the source and the sink of a streamline.
+func (b *builder) endsOf(ctx context.Context, p *trace.Both) [2]int {
+	b.goOn(ctx, &p.Back, true)
+	b.goOn(ctx, &p.Ahead, false)
 	ends := [2]int{b.arrival(&p.Back), b.arrival(&p.Ahead)}
 	for i, e := range ends {
 		if e >= 0 && b.s.Points[e].Index < 0 { // a saddle takes single curves only, not a region

@@ -2,6 +2,7 @@ package topology
 
 import (
 	"context"
+	"fmt"
 	"math"
 
 	"shearprint/field"
@@ -33,18 +34,24 @@ func (b *builder) addSeparatrices(ctx context.Context) error {
 		p := &b.s.Points[i]
 		switch {
 		case p.Type == Saddle && !p.Half:
-			starts = append(starts, b.byEigenvectors(i)...)
+			starts = append(starts, b.byEigenvectors(p, i)...)
 		case p.Index < 0:
-			starts = append(starts, b.bySectors(i)...)
+			starts = append(starts, b.bySectors(p, i)...)
 		}
 	}
 	lines, paths := make([]Line, len(starts)), make([]trace.Path, len(starts))
 	if err := inBlocks(ctx, len(starts), 1, func(from, to int) {
 		for i := from; i < to; i++ {
 			paths[i] = b.t.Trace(ctx, starts[i].loc, trace.Options{Backward: starts[i].backward})
-			lines[i] = b.separatrix(paths[i], starts[i])
 		}
 	}); err != nil {
+		return err
+	}
+	for i := range lines {
+		detours := b.goOn(ctx, &paths[i], starts[i].backward)
+		lines[i] = b.separatrix(paths[i], starts[i], detours)
+	}
+	if err := ctx.Err(); err != nil {
 		return err
 	}
 	for i := range lines {
@@ -78,8 +85,8 @@ func (b *builder) twice(lines []Line, l *Line) bool {
 	return false
 }
 
-// separatrix makes a line of the path traced from one start.
-func (b *builder) separatrix(path trace.Path, st start) Line {
+// separatrix makes a line of the path traced from one start, which went past so many cancelled pairs.
+func (b *builder) separatrix(path trace.Path, st start, detours int) Line {
 	path.Locs = append([]field.Loc{b.s.Points[st.point].Loc}, path.Locs...)
 	other := b.arrival(&path)
 	if other >= 0 && path.End != trace.Captured || other >= 0 && b.s.Points[other].Type != Saddle {
@@ -95,16 +102,18 @@ func (b *builder) separatrix(path trace.Path, st start) Line {
 		l.Type = Horn
 	}
 	b.explain(&l, b.setKind(&l), st, b.endWords(&path))
+	if detours > 0 {
+		l.Reason += fmt.Sprintf("; on its way it passes %s below the noise floor", plural(detours, "pair"))
+	}
 	return l
 }
 
 // byEigenvectors starts at both sides of both eigenvectors of the fitted Jacobian: the unstable ones first.
-func (b *builder) byEigenvectors(i int) []start {
-	p := &b.s.Points[i]
+func (b *builder) byEigenvectors(p *Point, i int) []start {
 	var out []start
 	for k, e := range p.Eigenvalues {
 		if e[1] != 0 {
-			return b.bySectors(i)
+			return b.bySectors(p, i)
 		}
 		v := eigenvector(p.Jacobian, e[0])
 		for _, sign := range [2]float64{1, -1} {
@@ -132,8 +141,7 @@ func eigenvector(j [2][2]float64, value float64) r3.Vec2 {
 
 // bySectors looks around half saddles and degenerate points of negative index on a circle: a separatrix leaves where tau
 // is radial and its neighbours turn towards it. Directions that leave the surface are passed over.
-func (b *builder) bySectors(i int) []start {
-	p := &b.s.Points[i]
+func (b *builder) bySectors(p *Point, i int) []start {
 	radius := p.Size * startShare
 	for _, t := range p.Patch {
 		for _, c := range b.f.Corner(t) {

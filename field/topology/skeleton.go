@@ -22,10 +22,13 @@ type builder struct {
 	f       *field.Field
 	t       *trace.Tracer
 	rates   *rates
-	owner   map[int32]int // number of the point per triangle that shares its index; for looking up only
-	edge    float64       // mean edge length
-	winding []winding     // separatrices that end on closed orbits
-	bands   int           // closed orbits that are no cycle: one of a band of them
+	owner   map[int32]int          // number of the point per triangle that shares its index; for looking up only
+	edge    float64                // mean edge length
+	winding []winding              // separatrices that end on closed orbits
+	ghosts  []Point                // the points below the noise floor; as stops they are numbered from len(s.Points) on
+	groups  []int32                // per ghost: those with the same number cancel together
+	escape  map[ghostWay][]*escape // what was found of ghosts so far; for looking up only
+	bands   int                    // closed orbits that are no cycle: one of a band of them
 }
 
 // addLines finds separatrices, cycles, open lines and basins.
@@ -46,8 +49,11 @@ func (s *Skeleton) addLines(ctx context.Context, progress func(share float64)) e
 			b.owner[p.Loc.Tri] = i
 		}
 	}
-	b.t = trace.New(s.Field, stops)
-	var err error
+	ghosts, err := b.findGhosts(ctx)
+	if err != nil {
+		return err
+	}
+	b.t = trace.New(s.Field, append(stops, ghosts...))
 	if b.rates, err = findRates(ctx, s.Field); err != nil {
 		return err
 	}
@@ -73,6 +79,9 @@ func (s *Skeleton) addLines(ctx context.Context, progress func(share float64)) e
 // came to rest. -1 for none.
 func (b *builder) arrival(p *trace.Path) int {
 	if p.End == trace.Captured {
+		if p.Stop >= len(b.s.Points) {
+			return -1 // a cancelled point
+		}
 		return p.Stop
 	}
 	if p.End != trace.Stagnant && p.End != trace.Stuck || len(p.Locs) == 0 {
@@ -101,7 +110,7 @@ func (b *builder) endWords(p *trace.Path) string {
 		return "a closed orbit, onto which it winds"
 	case trace.TooLong:
 		return "no end within the length limit"
-	case trace.Stagnant, trace.Stuck:
+	case trace.Stagnant, trace.Stuck, trace.Captured:
 		if b.s.Floor > 0 {
 			return "a place of faint shear whose critical points are below the noise floor"
 		}
