@@ -39,7 +39,7 @@ func (r *Renderer) furnitureAreas(s *Scene, c *canvas, pixels float64) []area {
 	m := float64(margin * pixels)
 	k := r.small.size / 12.5 // small frames have smaller furniture
 	row := float64(r.small.size * 1.45)
-	if q := s.Quantity.of(s.Field); q != Plain {
+	if q := s.Quantity.of(s.Field); q < Plain {
 		height := min(max(h*0.42, 60*k), 260*k)
 		l.ticks, l.step = ticks(r.low, r.high, int(height/(2.2*r.small.size)))
 		wide := 0.0

@@ -15,7 +15,7 @@ func (r *Renderer) overlay(ctx context.Context, s *Scene, c *canvas, factor floa
 	if !s.Bare {
 		taken = r.furnitureAreas(s, c, pixels)
 	}
-	if s.Isobars > 0 && s.Quantity.of(s.Field) != Plain {
+	if s.Isobars > 0 && s.Quantity.of(s.Field) < Plain {
 		taken = r.isobars(s, c, pixels, taken)
 	}
 	r.edges(c, sight, col, pixels)

@@ -17,12 +17,13 @@ const (
 	Cp
 	Pressure
 	TauSize
-	Plain // no scalar: one colour
+	Plain  // no scalar: one colour
+	Basins // Scene.Regions, a colour each; neighbours may have the same when there are very many
 )
 
 // String returns the quantity's symbol.
 func (q Quantity) String() string {
-	return [...]string{"auto", "cp", "p", "|tau|", "plain"}[min(q, Plain)]
+	return [...]string{"auto", "cp", "p", "|tau|", "plain", "basins"}[min(q, Basins)]
 }
 
 // of returns the quantity that is drawn: Auto resolved, and what the run does not have replaced by what it has.
@@ -33,8 +34,8 @@ func (q Quantity) of(f *field.Field) Quantity {
 	if (q == Auto || q == Pressure || q == Cp) && f.P != nil {
 		return Pressure
 	}
-	if q == Plain {
-		return Plain
+	if q >= Plain {
+		return q
 	}
 	if q == Pressure && f.Cp != nil {
 		return Cp
@@ -136,8 +137,9 @@ func (r Range) limits(values []float64) (lo, hi float64) {
 	return lo, hi
 }
 
-// scalars fills the scalar plane with the values at the vertices, interpolated.
-func (p *plate) scalars(ctx context.Context, l *level, values []float64) error {
+// scalars fills the scalar plane with the values at the vertices, interpolated; numbers of regions are taken from the
+// nearest corner instead.
+func (p *plate) scalars(ctx context.Context, l *level, values []float64, nearest bool) error {
 	none := float32(math.NaN())
 	return bands(ctx, 0, p.bottom-p.top, 32, func(from, to int) {
 		for i := from * p.w; i < to*p.w; i++ {
@@ -148,7 +150,21 @@ func (p *plate) scalars(ctx context.Context, l *level, values []float64) error {
 			}
 			t := &l.tris[h.tri]
 			u, v := float64(h.u), float64(h.v)
+			if nearest {
+				p.scalar[i] = float32(values[t[largest(1-u-v, u, v)]])
+				continue
+			}
 			p.scalar[i] = float32(float64((1-u-v)*values[t[0]]) + float64(u*values[t[1]]) + float64(v*values[t[2]]))
 		}
 	})
+}
+
+func largest(a, b, c float64) int {
+	switch {
+	case a >= b && a >= c:
+		return 0
+	case b >= c:
+		return 1
+	}
+	return 2
 }

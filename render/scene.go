@@ -13,7 +13,10 @@ type Scene struct {
 	Range    Range    // of the colours
 	Bands    int      // number of steps of colour; 0 for continuous colour
 	Isobars  int      // about so many lines of equal value, with labels; 0 for none
-	Theme    Theme
+	// Regions numbers the basin of each triangle, from 0, -1 for none (topology.Skeleton.Basins): what Quantity Basins
+	// colours.
+	Regions []int32
+	Theme   Theme
 
 	// Floor is the |tau| [unit of tau] below which direction is not to be relied on: the texture fades out there.
 	Floor float64

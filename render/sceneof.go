@@ -13,6 +13,7 @@ func SceneOf(f *field.Field, sk *topology.Skeleton) *Scene {
 		return s
 	}
 	s.Floor = sk.Floor
+	s.Regions = sk.Basins
 	for i := range sk.Points {
 		s.Marks = append(s.Marks, MarkOf(&sk.Points[i]))
 	}

@@ -41,6 +41,7 @@ type textureKey struct {
 type scalarKey struct {
 	rasterKey
 	quantity Quantity
+	regions  *int32 // where the scene's regions lie
 }
 
 // overlayKey is what an overlay depends on besides the raster. Marks and lines are told by where their slices lie.
@@ -78,6 +79,7 @@ type rangeKey struct {
 	field    *field.Field
 	quantity Quantity
 	limits   Range
+	regions  *int32
 }
 
 // job is what the stages up to mixing are asked for.
@@ -146,10 +148,10 @@ func (r *Renderer) stage(ctx context.Context, j *job) error {
 		r.kept.texture = texture
 	}
 	start = f.Times.lap(&f.Times.Convolve, start)
-	scalar := scalarKey{raster, s.Quantity.of(s.Field)}
+	scalar := scalarKey{raster, s.Quantity.of(s.Field), s.regionKey()}
 	r.limits(s)
 	if r.kept.scalar != scalar {
-		if err := p.scalars(ctx, level, r.values); err != nil {
+		if err := p.scalars(ctx, level, r.values, scalar.quantity == Basins); err != nil {
 			return err
 		}
 		r.kept.scalar = scalar
@@ -177,10 +179,24 @@ func (r *Renderer) texture(ctx context.Context, key textureKey) error {
 	return p.soften(ctx, key.smear, key.rows[2]-p.top, key.rows[3]-p.top)
 }
 
+// regionKey tells whose regions the scene colours.
+func (s *Scene) regionKey() *int32 {
+	if s.Quantity != Basins || len(s.Regions) == 0 {
+		return nil
+	}
+	return &s.Regions[0]
+}
+
 // limits brings the ends of the colours up to date.
 func (r *Renderer) limits(s *Scene) {
-	key := rangeKey{s.Field, s.Quantity.of(s.Field), s.Range}
+	key := rangeKey{s.Field, s.Quantity.of(s.Field), s.Range, s.regionKey()}
 	if r.spread == key {
+		return
+	}
+	if key.quantity == Basins {
+		r.values = regionValues(s.Field, s.Regions)
+		r.low, r.high = 0, regionColors-1
+		r.spread = key
 		return
 	}
 	if r.spread.field != key.field || r.spread.quantity != key.quantity {
@@ -202,7 +218,11 @@ func (r *Renderer) layers(s *Scene, sm smear, flow bool, from, to int) {
 		l.Cos, l.Sin, l.Animated = p.tex[1][lo:hi], p.tex[2][lo:hi], true
 	}
 	l.Scalar, l.Mask = fitted(l.Scalar, hi-lo), fitted(l.Mask, hi-lo)
-	for i, x := range s.Theme.palette(s.Quantity.of(s.Field)).table(r.low, r.high, s.Bands, c.none) {
+	t := s.Theme.palette(s.Quantity.of(s.Field)).table(r.low, r.high, s.Bands, c.none)
+	if s.Quantity == Basins {
+		t = regionTable(c.none)
+	}
+	for i, x := range t {
 		l.Table[i] = x
 	}
 	l.Curve = contrastCurve(flow)

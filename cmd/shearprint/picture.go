@@ -30,7 +30,8 @@ type pictureFlags struct {
 // Words of the options of picture.
 var (
 	colours = map[string]render.Quantity{
-		"auto": render.Auto, "cp": render.Cp, "p": render.Pressure, "tau": render.TauSize, "none": render.Plain,
+		"auto": render.Auto, "cp": render.Cp, "p": render.Pressure, "tau": render.TauSize, "basins": render.Basins,
+		"none": render.Plain,
 	}
 	patterns = map[string]render.Flow{"texture": render.Texture, "lines": render.FlowLines, "none": render.NoFlow}
 	themes   = map[string]render.Theme{"light": render.Light, "dark": render.Dark, "print": render.Print}
@@ -81,7 +82,7 @@ the flow separates, hollow where it attaches. Lines: unbroken where the flow sep
 	f.StringVar(&p.view, "view", "iso", "`NAME` of the view: "+strings.Join(render.ViewNames(), ", "))
 	f.StringVar(&p.look, "look", "", "view of one's own, `FROM:AT` as x,y,z:x,y,z")
 	f.StringVar(&p.size, "size", "1600x1000", "`WxH` in pixels")
-	f.StringVar(&p.colour, "colour", "auto", "cp, p, tau or none; auto takes the first that the run has")
+	f.StringVar(&p.colour, "colour", "auto", "cp, p, tau, basins or none; auto takes the first that the run has")
 	f.StringVar(&p.pattern, "pattern", "texture", "how the direction of tau is shown: texture, lines or none")
 	f.StringVar(&p.theme, "theme", "light", "light, dark or print")
 	f.StringVar(&p.hide, "hide", "", "`LAYERS` to leave out, with commas: "+strings.Join(layers, ", "))
@@ -102,7 +103,7 @@ func (p *pictureFlags) check() (w, h int, err error) {
 		}
 	}
 	if _, ok := colours[p.colour]; !ok {
-		return 0, 0, usagef("--colour %s: give auto, cp, p, tau or none", p.colour)
+		return 0, 0, usagef("--colour %s: give auto, cp, p, tau, basins or none", p.colour)
 	}
 	if _, ok := patterns[p.pattern]; !ok {
 		return 0, 0, usagef("--pattern %s: give texture, lines or none", p.pattern)
@@ -150,8 +151,9 @@ func (p *pictureFlags) draw(ctx context.Context, a *app, f *field.Field, w, h in
 	hidden := p.hidden()
 	points, lines := !slices.Contains(hidden, "points"), !slices.Contains(hidden, "lines")
 	var sk *topology.Skeleton
-	if points || lines {
-		opt := topology.Options{Lines: lines}
+	basins := colours[p.colour] == render.Basins
+	if points || lines || basins {
+		opt := topology.Options{Lines: lines || basins}
 		var end func()
 		opt.Progress, end = a.progress("reading the pattern", quiet)
 		var err error

@@ -22,7 +22,7 @@ type View struct {
 	Angle    float64    `json:"angle"` // vertical angle of view [rad]; 0 for the usual one
 	Parallel bool       `json:"parallel"`
 
-	Colour string `json:"colour"`  // "cp", "p", "tau" or "none"
+	Colour string `json:"colour"`  // "cp", "p", "tau", "basins" or "none"
 	Flow   string `json:"pattern"` // "texture", "lines" or "none"
 	Theme  string `json:"theme"`   // "light" or "dark"
 
@@ -43,7 +43,7 @@ type View struct {
 
 // Words that the fields may have; the first is the default.
 var (
-	colours = []string{"cp", "p", "tau", "none"}
+	colours = []string{"cp", "p", "tau", "basins", "none"}
 	flows   = []string{"texture", "lines", "none"}
 	themes  = []string{"light", "dark"}
 )

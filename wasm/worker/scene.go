@@ -14,7 +14,8 @@ import (
 // Words of the view in the renderer's terms.
 var (
 	quantities = map[string]render.Quantity{
-		"cp": render.Cp, "p": render.Pressure, "tau": render.TauSize, "none": render.Plain,
+		"cp": render.Cp, "p": render.Pressure, "tau": render.TauSize, "basins": render.Basins,
+		"none": render.Plain,
 	}
 	themes = map[string]render.Theme{"light": render.Light, "dark": render.Dark}
 )
@@ -41,6 +42,7 @@ func (p *painter) sceneOf() *render.Scene {
 		s.Flow = render.NoFlow
 	}
 	if p.skeleton != nil {
+		s.Regions = p.skeleton.Basins
 		p.addLines(s)
 		if v.Points {
 			p.addMarks(s)

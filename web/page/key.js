@@ -27,7 +27,7 @@ export class Key {
   }
 
   #showColours(key) {
-    if (key.colour === "none") return this.#colours.replaceChildren();
+    if (key.colour === "none" || key.colour === "basins") return this.#colours.replaceChildren();
     const bytes = Uint8Array.from(atob(key.table), (c) => c.charCodeAt(0));
     const canvas = make("canvas", { width: 255, height: 1, "aria-hidden": "true" });
     const image = new ImageData(255, 1);

@@ -5,7 +5,8 @@ import { make, number } from "./words.js";
 const views = ["front", "rear", "left", "right", "top", "bottom", "iso"];
 
 const layers = [
-  { name: "colour", label: "Colour", choices: [["cp", "pressure coefficient"], ["p", "pressure"], ["tau", "wall shear stress"], ["none", "none"]] },
+  { name: "colour", label: "Colour", choices: [["cp", "pressure coefficient"], ["p", "pressure"], ["tau", "wall shear stress"],
+    ["basins", "basins: from which source, into which sink"], ["none", "none"]] },
   { name: "pattern", label: "Flow at the wall", choices: [["texture", "streamline texture"], ["lines", "single streamlines"], ["none", "none"]] },
   { name: "theme", label: "Theme", choices: [["light", "light"], ["dark", "dark"]] },
 ];
@@ -53,7 +54,7 @@ export class Sheets {
     document.getElementById("key").hidden = !view.legend;
     this.#layers.replaceChildren(
       ...layers.map((l) => make("fieldset", {}, make("legend", {}, l.label), ...l.choices
-        .filter(([v]) => l.name !== "colour" || v === "none" || v === "tau" || run[`has_${v}`])
+        .filter(([v]) => l.name !== "colour" || v === "none" || v === "tau" || v === "basins" || run[`has_${v}`])
         .map(([v, text]) => make("label", {}, make("input", { type: "radio", name: l.name, value: v, checked: view[l.name] === v,
           onchange: () => this.#change(l.name, v) }), ` ${text}`)))),
       ...switches.map(([name, text]) => make("label", {}, make("input", { type: "checkbox", checked: view[name],
