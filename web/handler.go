@@ -5,7 +5,7 @@ import (
 	"crypto/sha256"
 	"embed"
 	"encoding/hex"
-	"fmt"
+	"encoding/json"
 	"io/fs"
 	"net/http"
 	"os"
@@ -32,11 +32,9 @@ func Handler(dir string, runs []Run) http.Handler {
 		panic("web: " + err.Error()) // the folder is embedded above
 	}
 	s := &server{page: page, dir: dir, runs: map[string]Run{}}
-	for i, r := range runs {
+	for _, r := range runs {
 		s.runs[r.Name] = r
-		if i == 0 {
-			s.first = r.Name
-		}
+		s.names = append(s.names, r.Name)
 	}
 	return s
 }
@@ -45,7 +43,7 @@ type server struct {
 	page  fs.FS
 	dir   string
 	runs  map[string]Run
-	first string
+	names []string // of the runs, in order
 }
 
 // kinds are the media types that browsers insist on.
@@ -99,7 +97,8 @@ func (s *server) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 // programs, the runs under runs/, and their list.
 func (s *server) file(name string, packed bool) ([]byte, bool, error) {
 	if name == "runs.json" {
-		return fmt.Appendf(nil, "{\"first\": %q}\n", s.first), false, nil
+		data, err := json.Marshal(map[string][]string{"runs": append([]string{}, s.names...)})
+		return data, false, err
 	}
 	if run, ok := strings.CutPrefix(name, "runs/"); ok {
 		r, ok := s.runs[run]

@@ -110,7 +110,13 @@ func TestShow(t *testing.T) {
 	if b.painted() < full/4 {
 		t.Error("the stage is empty")
 	}
-	eval[any](b, `shearprint.call("view", {floor: 0.05, theme: "light", pattern: "texture"})`)
+	b.do(chromedp.Evaluate(`document.querySelector("#layers input[value=basins]")?.click()`, nil))
+	if v := b.view(); v.Colour != "basins" {
+		t.Errorf("after a click on basins the view is %+v", v)
+	}
+	b.settle()
+	b.shot("basins")
+	eval[any](b, `shearprint.call("view", {floor: 0.05, theme: "light", pattern: "texture", colour: "cp"})`)
 	b.settle()
 	b.shot("floor")
 	f, err := format.Load(demo.Name, demo.Radome, format.Options{})

@@ -10,6 +10,7 @@ import { Key } from "./key.js";
 import { Frames } from "./frames.js";
 import { installCalls } from "./calls.js";
 import { choosePresenter } from "./present.js";
+import { make } from "./words.js";
 
 const el = (id) => document.getElementById(id);
 const engine = new Engine();
@@ -70,11 +71,20 @@ async function openFromAddress() {
   const dark = !location.hash && matchMedia("(prefers-color-scheme: dark)").matches;
   const link = dark ? "theme=dark" : location.hash.slice(1);
   const list = await (await fetch("runs.json")).json();
-  const name = new URLSearchParams(link).get("run") || list.first;
+  const name = new URLSearchParams(link).get("run") || list.runs[0];
+  offer(list.runs, name);
   const answer = await work.fetch(`runs/${encodeURIComponent(name)}`, `Loading ${name}`);
   if (!answer) throw new Error(`${name}: this page has no such run; drop the file here, or open the address without #`);
   await openBytes(name, name, answer, link);
 }
+
+// offer lists the runs that the page has, where there are several.
+function offer(runs, chosen) {
+  const list = el("runs");
+  list.hidden = runs.length < 2;
+  list.replaceChildren(...runs.map((name) => make("option", { selected: name === chosen }, name)));
+}
+el("runs").addEventListener("change", (e) => { location.hash = `run=${encodeURIComponent(e.target.value)}`; });
 
 // --- instruments
 
