@@ -5,6 +5,7 @@ import (
 	"encoding/binary"
 
 	"shearprint/field"
+	"shearprint/field/format/hdf5"
 )
 
 // kind is one row of the table of formats: what it is called, how its first bytes tell it, and its reader.
@@ -23,6 +24,8 @@ func kinds() []kind {
 		{"STL", isBinarySTL, readBinarySTL},
 		{"STL", isTextSTL, readTextSTL},
 		{"STL", looksCutSTL, readBinarySTL},
+		{"CGNS", starts(hdf5.Signature), readCGNS},
+		{"CGNS", isADF, readADF},
 		{"OBJ", isOBJ, readOBJ},
 		{"table", func([]byte) bool { return true }, readTable},
 	}

@@ -83,9 +83,9 @@ const signs = [
 const red = "var(--separation)", green = "var(--attachment)";
 const shapes = {
   node: () => [draw("circle", { cx: 9, cy: 7, r: 4.4, fill: "currentColor" })],
-  focus: () => [draw("circle", { cx: 9, cy: 7, r: 4.4, fill: "currentColor" }),
-    draw("path", { d: "M13.4 7c.6-4-3.4-6.6-6.8-5.4", fill: "none", stroke: "currentColor", "stroke-width": 1.6 })],
-  saddle: () => [draw("path", { d: "M9 1.2Q9.8 6.2 14.8 7Q9.8 7.8 9 12.8Q8.2 7.8 3.2 7Q8.2 6.2 9 1.2Z", fill: "currentColor", stroke: "currentColor", "stroke-width": 1.6 })],
+  focus: () => [draw("circle", { cx: 9, cy: 7, r: 3.4, fill: "currentColor" }),
+    draw("path", { d: "M9.9 7A2.6 2.6 0 0 1 15.1 7M8.1 7A2.6 2.6 0 0 1 2.9 7", fill: "none", stroke: "currentColor", "stroke-width": 1.8, "stroke-linecap": "round" })],
+  saddle: () => [draw("path", { d: "M4 2Q9 5.6 14 2Q10.4 7 14 12Q9 8.4 4 12Q7.6 7 4 2Z", fill: "currentColor", stroke: "currentColor", "stroke-width": 1, "stroke-linejoin": "round" })],
   degenerate: () => [draw("rect", { x: 5, y: 3, width: 8, height: 8, fill: "currentColor" })],
   filled: () => [draw("circle", { cx: 9, cy: 7, r: 4.4, fill: red })],
   hollow: () => [draw("circle", { cx: 9, cy: 7, r: 3.8, fill: "var(--field)", stroke: green, "stroke-width": 1.8 })],
