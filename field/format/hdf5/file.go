@@ -37,6 +37,7 @@ type Error struct {
 	What string
 }
 
+// Error returns the place and what is wrong there.
 func (e *Error) Error() string {
 	if e.Byte < 0 {
 		return e.What
@@ -62,7 +63,11 @@ func Open(data []byte) (*File, error) {
 	}
 	f := &File{data: data, budget: maxBlocks, offsets: 8, lengths: 8}
 	c := f.at(uint64(len(Signature)))
-	switch version := c.u8(); version {
+	version := c.u8()
+	if c.err != nil {
+		return nil, c.err
+	}
+	switch version {
 	case 0, 1:
 		c.skip(4)
 		f.offsets, f.lengths = int(c.u8()), int(c.u8())
