@@ -7,6 +7,7 @@ import (
 	"os"
 	"os/exec"
 	"path/filepath"
+	"runtime"
 	"strings"
 	"testing"
 
@@ -15,9 +16,13 @@ import (
 	"shearprint/field/r3"
 )
 
-// writtenCGNS returns a file of the given kind that the standard's reference library wrote (testdata/cgns/write.c).
-func writtenCGNS(t testing.TB, kind string) []byte {
+// writtenCGNS returns a file of the given kind that the standard's reference library wrote (testdata/cgns/write.c), with
+// cells x cells cells.
+func writtenCGNS(t testing.TB, kind string, cells int) []byte {
 	t.Helper()
+	if runtime.GOOS == "js" {
+		t.Skip("the reference library's writer is a program of its own, which cannot be started from WebAssembly")
+	}
 	fail := t.Skipf
 	if os.Getenv("CI") != "" {
 		fail = t.Fatalf
@@ -25,7 +30,7 @@ func writtenCGNS(t testing.TB, kind string) []byte {
 	dir := t.TempDir()
 	program, file := filepath.Join(dir, "write"), filepath.Join(dir, kind+".cgns")
 	source := filepath.Join("testdata", "cgns", "write.c")
-	if out, err := exec.Command("cc", "-o", program, source, "-lcgns").CombinedOutput(); err != nil {
+	if out, err := exec.Command("cc", fmt.Sprintf("-DCELLS=%d", cells), "-o", program, source, "-lcgns").CombinedOutput(); err != nil {
 		fail("no C compiler with the CGNS library (Debian: gcc libcgns-dev): %v %s", err, out)
 	}
 	if out, err := exec.Command(program, kind, file).CombinedOutput(); err != nil {
@@ -58,7 +63,7 @@ func TestCGNSOfTheReferenceLibrary(t *testing.T) {
 		{"feet", true, true, false, "ft", "", false},
 		{"many", true, true, false, "m", "Pa", false},
 	} {
-		raw, err := format.Read(c.kind+".cgns", writtenCGNS(t, c.kind), format.Options{})
+		raw, err := format.Read(c.kind+".cgns", writtenCGNS(t, c.kind, 4), format.Options{})
 		if err != nil {
 			t.Errorf("%s: %v", c.kind, err)
 			continue
@@ -174,7 +179,7 @@ func TestSpoiltCGNS(t *testing.T) {
 		}
 	}
 	for _, kind := range []string{"quads", "volume", "many"} {
-		data := writtenCGNS(t, kind)
+		data := writtenCGNS(t, kind, 4)
 		for n := 8; n < len(data); n += len(data)/60 + 1 {
 			check(fmt.Sprintf("%s cut at %d", kind, n), data[:n])
 		}
@@ -204,4 +209,35 @@ func TestRefusedCGNS(t *testing.T) {
 		!strings.Contains(err.Error(), `nothing is called "Velocity"`) {
 		t.Errorf("a name that is not there: %v", err)
 	}
+}
+
+func FuzzCGNS(f *testing.F) {
+	data, err := os.ReadFile(filepath.Join("testdata", "cgns", "square.cgns"))
+	if err != nil {
+		f.Fatal(err)
+	}
+	f.Add(data)
+	f.Add([]byte("\x89HDF\r\n\x1a\n"))
+	f.Fuzz(func(t *testing.T, data []byte) { checkAny(t, data, format.Options{}) })
+}
+
+// BenchmarkLoadCGNS reads a million triangles that the reference library wrote, and beside it the same bytes without
+// looking at them.
+func BenchmarkLoadCGNS(b *testing.B) {
+	data := writtenCGNS(b, "triangles", 708)
+	b.Run("read", func(b *testing.B) {
+		b.SetBytes(int64(len(data)))
+		for b.Loop() {
+			if _, err := format.Read("x.cgns", data, format.Options{}); err != nil {
+				b.Fatal(err)
+			}
+		}
+	})
+	b.Run("plain", func(b *testing.B) {
+		b.SetBytes(int64(len(data)))
+		to := make([]byte, len(data))
+		for b.Loop() {
+			copy(to, data)
+		}
+	})
 }

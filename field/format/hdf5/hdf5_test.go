@@ -5,6 +5,7 @@ import (
 	"os"
 	"os/exec"
 	"path/filepath"
+	"runtime"
 	"strings"
 	"testing"
 
@@ -16,6 +17,9 @@ const limit = 1 << 24
 // written returns a file that the format's reference library wrote.
 func written(t testing.TB, version string) []byte {
 	t.Helper()
+	if runtime.GOOS == "js" {
+		t.Skip("the reference library's writer is a program of its own, which cannot be started from WebAssembly")
+	}
 	fail := t.Skipf
 	if os.Getenv("CI") != "" {
 		fail = t.Fatalf
@@ -166,7 +170,7 @@ func walk(data []byte) int {
 			return
 		}
 		o.Attribute("label")
-		if v, err := o.Dataset(limit); err == nil && v.Count() > 0 && v.Kind != hdf5.Text {
+		if v, err := o.Dataset(1 << 16); err == nil && v.Count() > 0 && v.Kind != hdf5.Text {
 			v.Float(v.Count() - 1)
 		}
 		children, _ := o.Children()

@@ -1,11 +1,14 @@
 /* Writes small CGNS files with the standard's reference library, for the reader's tests: write KIND FILE.
- * The surface is the unit square in the plane z = 0 with n x n cells; tau = (1 + x, 2 - y, 0), p = 10 x + y. */
+ * The surface is the unit square in the plane z = 0 with N x N cells; tau = (1 + x, 2 - y, 0), p = 10 x + y. */
 #include <cgnslib.h>
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
 
-enum { N = 4, V = (N + 1) * (N + 1), C = N * N };
+#ifndef CELLS
+#define CELLS 4
+#endif
+enum { N = CELLS, V = (N + 1) * (N + 1), C = N * N };
 
 static double x[2 * V], y[2 * V], z[2 * V];
 
@@ -36,7 +39,7 @@ static void coordinates(int f, int b, int zone) {
 
 /* solution writes tau and p at the vertices, or at the cells' middles in the order of the cells. */
 static void solution(int f, int b, int zone, int cells, const char *prefix, const char *p) {
-	double t[3][V], q[V];
+	static double t[3][V], q[V];
 	int n = cells ? C : V, s, id;
 	for (int i = 0; i < n; i++) {
 		double px = cells ? (i % N + 0.5) / N : x[i], py = cells ? (i / N + 0.5) / N : y[i];
@@ -73,7 +76,7 @@ int main(int argc, char **argv) {
 		return 2;
 	const char *kind = argv[1];
 	int f, b, zone, s, cell = strcmp(kind, "volume") == 0 ? 3 : 2;
-	cgsize_t e[8 * C + 8], offsets[2 * C + 1];
+	static cgsize_t e[8 * C + 8], offsets[2 * C + 1];
 	grid();
 	check(cg_set_file_type(CG_FILE_HDF5));
 	check(cg_open(argv[2], CG_MODE_WRITE, &f));
@@ -89,11 +92,12 @@ int main(int argc, char **argv) {
 		solution(f, b, zone, 1, "SkinFriction", "Pressure");
 	} else if (strcmp(kind, "volume") == 0) {
 		/* One layer of hexahedra; the wall is the layer's lower side, with data on its faces in reversed order. */
-		cgsize_t size[3] = {2 * V, C, 0}, list[C];
-		double t[3][C];
+		cgsize_t size[3] = {2 * V, C, 0};
+		static cgsize_t list[C];
+		static double t[3][C];
 		check(cg_zone_write(f, b, "air", size, CGNS_ENUMV(Unstructured), &zone));
 		coordinates(f, b, zone);
-		cgsize_t flat[4 * C];
+		static cgsize_t flat[4 * C];
 		quads(flat);
 		for (int i = 0; i < C; i++)
 			for (int k = 0; k < 4; k++) {
@@ -130,7 +134,7 @@ int main(int argc, char **argv) {
 		coordinates(f, b, zone);
 		quads(e);
 		if (triangles) {
-			cgsize_t t[6 * C];
+			static cgsize_t t[6 * C];
 			for (int i = 0; i < C; i++) {
 				cgsize_t pair[6] = {e[4 * i], e[4 * i + 1], e[4 * i + 2], e[4 * i], e[4 * i + 2], e[4 * i + 3]};
 				memcpy(t + 6 * i, pair, sizeof pair);
@@ -138,7 +142,7 @@ int main(int argc, char **argv) {
 			check(cg_section_write(f, b, zone, "faces", CGNS_ENUMV(TRI_3), 1, 2 * C, 0, t, &s));
 			solution(f, b, zone, 0, "WallShearStress", "Pressure");
 		} else if (strcmp(kind, "mixed") == 0) {
-			cgsize_t m[5 * C];
+			static cgsize_t m[5 * C];
 			for (int i = 0; i < C; i++) {
 				m[5 * i] = CGNS_ENUMV(QUAD_4);
 				memcpy(m + 5 * i + 1, e + 4 * i, 4 * sizeof *e);
