@@ -31,7 +31,7 @@ var allowed = map[string][]string{
 	"testdata/demo": {},
 	"cmd/shearprint": {
 		"field", "field/r3", "field/trace", "field/topology", "field/study", "field/format", "field/exact", "render", "web",
-		"testdata/demo",
+		"testdata/demo", "wasm/session",
 	},
 }
 

@@ -25,6 +25,7 @@ type pictureFlags struct {
 	colour, pattern, theme string
 	hide, floor            string
 	transparent            bool
+	samples                int
 }
 
 // Words of the options of picture.
@@ -53,7 +54,8 @@ Points: a disc is a node, a disc with a curl a focus, a star a saddle, a square 
 the flow separates, hollow where it attaches. Lines: unbroken where the flow separates, dashed where it attaches.`,
 		Example: `  shearprint picture wing.ply -o wing.png
   shearprint picture wing.ply --view rear --size 3840x2160 --theme print -o rear.png
-  shearprint picture wing.ply --look 2,-3,1:0.5,0,0 --colour tau --hide lines,legend -o detail.png`,
+  shearprint picture wing.ply --look 2,-3,1:0.5,0,0 --colour tau --hide lines,legend -o detail.png
+  shearprint picture wing.ply --view '#run=wing.ply&eye=-3,-3,2&target=0,0,0&up=0,0,1' --samples 2 -o as-shared.png`,
 		Args: oneRun,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			w, h, err := p.check()
@@ -79,7 +81,8 @@ the flow separates, hollow where it attaches. Lines: unbroken where the flow sep
 	}
 	f := cmd.Flags()
 	addOutput(cmd, &out, &force)
-	f.StringVar(&p.view, "view", "iso", "`NAME` of the view: "+strings.Join(render.ViewNames(), ", "))
+	f.StringVar(&p.view, "view", "iso", "`VIEW` by its name: "+strings.Join(render.ViewNames(), ", ")+
+		"; or all that a link of the page has after its #, with the #")
 	f.StringVar(&p.look, "look", "", "view of one's own, `FROM:AT` as x,y,z:x,y,z")
 	f.StringVar(&p.size, "size", "1600x1000", "`WxH` in pixels")
 	f.StringVar(&p.colour, "colour", "auto", "cp, p, tau, basins or none; auto takes the first that the run has")
@@ -88,12 +91,22 @@ the flow separates, hollow where it attaches. Lines: unbroken where the flow sep
 	f.StringVar(&p.hide, "hide", "", "`LAYERS` to leave out, with commas: "+strings.Join(layers, ", "))
 	f.StringVar(&p.floor, "min-robustness", "0", "leave out points weaker than `R`, in the unit of tau, or R% of the largest")
 	f.BoolVar(&p.transparent, "transparent", false, "no background")
+	f.IntVar(&p.samples, "samples", 1, "`N` samples per pixel each way, 1 to 4: more are smoother; 1 gives the page's pixels")
 	r.add(cmd)
 	return cmd
 }
 
 // check refuses words that make no sense, before any work, and returns the picture's size.
 func (p *pictureFlags) check() (w, h int, err error) {
+	if p.samples < 1 || p.samples > 4 {
+		return 0, 0, usagef("--samples %d: give 1 to 4", p.samples)
+	}
+	if p.linked() {
+		if _, err := p.link(); err != nil {
+			return 0, 0, usagef("--view: %w", err)
+		}
+		return parseSize(p.size)
+	}
 	if !slices.Contains(render.ViewNames(), p.view) {
 		return 0, 0, usagef("--view %s: give one of %s", p.view, strings.Join(render.ViewNames(), ", "))
 	}
@@ -148,6 +161,9 @@ const streamlineGap = 1. / 60
 
 // draw makes the picture. The skeleton is computed only if it is shown.
 func (p *pictureFlags) draw(ctx context.Context, a *app, f *field.Field, w, h int, quiet bool) (*image.RGBA, error) {
+	if p.linked() {
+		return p.drawLink(ctx, a, f, w, h, quiet)
+	}
 	hidden := p.hidden()
 	points, lines := !slices.Contains(hidden, "points"), !slices.Contains(hidden, "lines")
 	var sk *topology.Skeleton
@@ -181,11 +197,16 @@ func (p *pictureFlags) draw(ctx context.Context, a *app, f *field.Field, w, h in
 	if !lines {
 		scene.Lines = nil
 	}
-	frame, err := render.NewRenderer().Frame(ctx, scene, p.camera(f, w, h), w, h, render.Still)
+	return p.paint(ctx, scene, p.camera(f, w, h), w, h)
+}
+
+// paint makes the pixels.
+func (p *pictureFlags) paint(ctx context.Context, s *render.Scene, c render.Camera, w, h int) (*image.RGBA, error) {
+	picture, err := render.NewRenderer().Picture(ctx, s, c, w, h, p.samples)
 	if err != nil {
 		return nil, fmt.Errorf("the picture: %w", err)
 	}
-	return &image.RGBA{Pix: frame.Pix, Stride: 4 * w, Rect: image.Rect(0, 0, w, h)}, nil
+	return picture, nil
 }
 
 func (p *pictureFlags) camera(f *field.Field, w, h int) render.Camera {

@@ -117,6 +117,9 @@ func TestExitStatus(t *testing.T) {
 		{"convert|" + saddle + "|-o|" + out + ".glb", badUsage}, // it exists by now
 		{"convert|" + saddle + "|-o|" + out + ".glb|--force", done},
 		{"convert|" + saddle + "|-o|" + filepath.Join(out, "no", "folder.glb"), badUsage},
+		{"picture|" + saddle + "|-o|" + out + "4.png|--size|64x48|--samples|2|--view|#eye=0,0,3&target=0,0,0&up=0,1,0", done},
+		{"picture|" + saddle + "|-o|" + out + "5.png|--view|#eye=0,0", badUsage},
+		{"picture|" + saddle + "|-o|" + out + "5.png|--samples|5", badUsage},
 		{"picture|" + saddle, badUsage},
 		{"picture|" + saddle + "|-o|" + out + ".jpg", badUsage},
 		{"picture|" + saddle + "|-o|" + out + "3.png|--view|behind", badUsage},

@@ -9,59 +9,23 @@ import (
 	"shearprint/field/r3"
 	"shearprint/field/topology"
 	"shearprint/render"
+	"shearprint/wasm/session"
 )
 
-// Words of the view in the renderer's terms.
-var (
-	quantities = map[string]render.Quantity{
-		"cp": render.Cp, "p": render.Pressure, "tau": render.TauSize, "basins": render.Basins,
-		"none": render.Plain,
-	}
-	themes = map[string]render.Theme{"light": render.Light, "dark": render.Dark}
-)
-
-// isobarCount is about how many lines of equal pressure a picture bears beside its texture.
-const isobarCount = 12
-
-// sceneOf returns the scene of the present view.
+// sceneOf returns the scene of the present view. The page has a key of its own.
 func (p *painter) sceneOf() *render.Scene {
 	v := &p.view
-	s := &render.Scene{
-		Field: p.field, Quantity: quantities[v.Colour], Theme: themes[v.Theme], Scale: p.size.Ratio, Bare: true, // the page has a key of its own
-		Animate: v.Motion && v.Flow == "texture",
+	var points []*topology.Point
+	if p.skeleton != nil && v.Points {
+		points = p.visiblePoints()
 	}
-	if v.Isobars {
-		s.Isobars = isobarCount
-	}
-	switch v.Flow {
-	case "texture":
-		s.Flow = render.Texture
-	case "lines":
-		s.Flow, s.Streamlines = render.FlowLines, p.streamlines()
-	default:
-		s.Flow = render.NoFlow
-	}
-	if p.skeleton != nil {
-		s.Regions = p.skeleton.Basins
-		p.addLines(s)
-		if v.Points {
-			p.addMarks(s)
-		}
-	}
-	if v.At != nil && !markChosen(s) {
-		loc, _ := p.field.Nearest(vec(*v.At))
-		s.Marks = append(s.Marks, render.Mark{Loc: loc, Shape: render.ProbeMark, Chosen: true})
+	s := v.Scene(p.field, p.skeleton, points)
+	s.Scale, s.Bare = p.size.Ratio, true
+	s.Animate = v.Motion && v.Flow == "texture"
+	if v.Flow == "lines" {
+		s.Streamlines = p.streamlines()
 	}
 	return s
-}
-
-func markChosen(s *render.Scene) bool {
-	for i := range s.Marks {
-		if s.Marks[i].Chosen {
-			return true
-		}
-	}
-	return false
 }
 
 // visiblePoints returns the points above the view's noise floor. While the floor is moved, those that it would cancel are
@@ -88,41 +52,13 @@ func (p *painter) visiblePoints() []*topology.Point {
 	return out
 }
 
-func (p *painter) addMarks(s *render.Scene) {
-	for _, q := range p.visiblePoints() {
-		m := render.MarkOf(q)
-		m.Chosen = p.view.At != nil && same(vec(*p.view.At), q.Position)
-		s.Marks = append(s.Marks, m)
-	}
-}
-
-// same tells whether two places are one, up to the digits of a link.
-func same(a, b r3.Vec) bool { return a.Sub(b).Norm() <= 1e-7*max(a.Norm(), b.Norm()) }
-
-func (p *painter) addLines(s *render.Scene) {
-	v := &p.view
-	kinds := map[topology.Kind]bool{
-		topology.SeparationLine: v.Separation, topology.AttachmentLine: v.Attachment,
-		topology.NoKind: v.Separation || v.Attachment,
-	}
-	types := map[topology.LineType]bool{
-		topology.Closed: v.Closed, topology.Horn: v.Horn, topology.Open: v.Open, topology.Cycle: v.Cycle,
-	}
-	for i := range p.skeleton.Lines {
-		l := &p.skeleton.Lines[i]
-		if kinds[l.Kind] && types[l.Type] {
-			s.Lines = append(s.Lines, render.LineOf(l))
-		}
-	}
-}
-
 // skeletonPoint returns the critical point at a place; nil for none.
 func (p *painter) skeletonPoint(at r3.Vec) *topology.Point {
 	if p.skeleton == nil {
 		return nil
 	}
 	for i := range p.skeleton.Points {
-		if same(p.skeleton.Points[i].Position, at) {
+		if session.Same(p.skeleton.Points[i].Position, at) {
 			return &p.skeleton.Points[i]
 		}
 	}
