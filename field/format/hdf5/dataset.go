@@ -194,7 +194,14 @@ func (o *Object) gather(v *Value, l *layout, size int) error {
 	if l.address == undefined {
 		return nil
 	}
+	left := v.chunkCount(l.chunk)
 	put := func(address, stored uint64, mask uint32, offset []uint64) error {
+		if left--; left < 0 {
+			return wrong(address, "%q has more chunks than its size has room for", o.Name)
+		}
+		if o.f.chunks -= chunkSize; o.f.chunks < 0 {
+			return wrong(address, "the file's chunks have more than %d bytes", maxChunks)
+		}
 		c := o.f.block(address, stored)
 		if c.err != nil {
 			return c.err
@@ -227,6 +234,15 @@ func (o *Object) gather(v *Value, l *layout, size int) error {
 		}
 		return put(child, stored, mask, offset)
 	})
+}
+
+// chunkCount returns how many chunks a dataset may have.
+func (v *Value) chunkCount(chunk []int) int {
+	n := 1
+	for k, d := range v.Dims {
+		n *= (d + chunk[k] - 1) / chunk[k] // at most the number of elements
+	}
+	return n
 }
 
 // maxChunk bounds one chunk's bytes; libraries allow no more than 4 GiB, and write some megabytes.

@@ -25,14 +25,21 @@ type File struct {
 	offsets int // bytes of an address
 	lengths int // bytes of a length
 	root    uint64
-	budget  int // how many blocks may still be read
+	steps   int // how many parts may still be visited
+	chunks  int // bytes of chunks that may still be unpacked or copied
 }
 
-// A block of a file takes at least bytesPerBlock bytes, and readers come back to an object a few times; a file whose blocks
-// are visited more often than that leads in circles.
+// Bounds of what one file may ask for, whose parts may refer to one another without end.
 const (
-	bytesPerBlock = 8
-	leastBlocks   = 1000
+	// Headers, messages, nodes and entries take at least four bytes, and readers come back to an object a few times; a file
+	// whose parts are visited more often leads in circles. The last bound keeps large files within some seconds.
+	stepsPerByte = 4
+	leastSteps   = 1000
+	maxSteps     = 16_000_000
+	// maxChunks bounds the bytes of all chunks together: what the datasets of the largest run have, and some seconds.
+	maxChunks = 1 << 30
+	// maxName bounds the bytes of a name; CGNS has 32 at most.
+	maxName = 1024
 )
 
 // Error says where in the file something is wrong.
@@ -65,7 +72,8 @@ func Open(data []byte) (*File, error) {
 	if !bytes.HasPrefix(data, []byte(Signature)) {
 		return nil, ErrNotHDF5
 	}
-	f := &File{data: data, budget: leastBlocks + len(data)/bytesPerBlock, offsets: 8, lengths: 8}
+	f := &File{data: data, offsets: 8, lengths: 8, chunks: maxChunks,
+		steps: min(maxSteps, stepsPerByte*len(data)+leastSteps)}
 	c := f.at(uint64(len(Signature)))
 	version := c.u8()
 	if c.err != nil {
@@ -148,10 +156,9 @@ func (f *File) block(address, n uint64) *cursor {
 	return c
 }
 
-// spend counts one visited block.
+// spend counts one visited part.
 func (f *File) spend(at uint64) error {
-	f.budget--
-	if f.budget < 0 {
+	if f.steps--; f.steps < 0 {
 		return wrong(at, "the file leads in circles")
 	}
 	return nil

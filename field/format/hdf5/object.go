@@ -53,8 +53,8 @@ func (f *File) object(name string, address uint64) (*Object, error) {
 	return o, o.readOld(c)
 }
 
-// maxContinuations bounds the pieces of one object header.
-const maxContinuations = 10_000
+// maxMessages bounds the messages of one object header; version 1 has no room for more.
+const maxMessages = 1<<16 - 1
 
 type piece struct{ address, size uint64 }
 
@@ -73,9 +73,6 @@ func (o *Object) readOld(c *cursor) error {
 	}
 	pieces := []piece{{c.place() - o.f.base, size}}
 	for i := 0; i < len(pieces); i++ {
-		if i > maxContinuations {
-			return wrong(o.address, "the object header goes on without end")
-		}
 		b := o.f.block(pieces[i].address, pieces[i].size)
 		for b.err == nil && b.left() >= 8 && len(o.messages) < count {
 			m := message{kind: b.u16()}
@@ -84,9 +81,8 @@ func (o *Object) readOld(c *cursor) error {
 			b.skip(3)
 			m.at = b.place()
 			m.data = b.take(n)
-			o.messages = append(o.messages, m)
-			if m.kind == continuationMessage && b.err == nil {
-				pieces = append(pieces, o.continuation(m))
+			if err := o.keep(m, b, &pieces); err != nil {
+				return err
 			}
 		}
 		if b.err != nil {
@@ -115,9 +111,6 @@ func (o *Object) readNew(c *cursor) error {
 	}
 	pieces := []piece{{c.place() - o.f.base, size}}
 	for i := 0; i < len(pieces); i++ {
-		if i > maxContinuations {
-			return wrong(o.address, "the object header goes on without end")
-		}
 		b := o.f.block(pieces[i].address, pieces[i].size)
 		if i > 0 {
 			b.expect("OCHK")
@@ -125,15 +118,14 @@ func (o *Object) readNew(c *cursor) error {
 				b.data = b.data[:len(b.data)-4] // the checksum
 			}
 		}
-		o.readMessages(b, flags&4 != 0, &pieces)
-		if b.err != nil {
-			return b.err
+		if err := o.readMessages(b, flags&4 != 0, &pieces); err != nil {
+			return err
 		}
 	}
 	return nil
 }
 
-func (o *Object) readMessages(b *cursor, ordered bool, pieces *[]piece) {
+func (o *Object) readMessages(b *cursor, ordered bool, pieces *[]piece) error {
 	head := 4
 	if ordered {
 		head = 6
@@ -147,11 +139,26 @@ func (o *Object) readMessages(b *cursor, ordered bool, pieces *[]piece) {
 		}
 		m.at = b.place()
 		m.data = b.take(n)
-		o.messages = append(o.messages, m)
-		if m.kind == continuationMessage && b.err == nil {
-			*pieces = append(*pieces, o.continuation(m))
+		if err := o.keep(m, b, pieces); err != nil {
+			return err
 		}
 	}
+	return b.err
+}
+
+// keep adds a message that was read from b; pieces that lead back to one another end in too many of them.
+func (o *Object) keep(m message, b *cursor, pieces *[]piece) error {
+	if b.err != nil {
+		return b.err
+	}
+	if len(o.messages) >= maxMessages {
+		return wrong(o.address, "the object header has more than %d messages", maxMessages)
+	}
+	o.messages = append(o.messages, m)
+	if m.kind == continuationMessage {
+		*pieces = append(*pieces, o.continuation(m))
+	}
+	return o.f.spend(m.at)
 }
 
 func (o *Object) continuation(m message) piece {
@@ -259,8 +266,11 @@ func (f *File) readLink(c *cursor) (link, error) {
 		c.skip(1)
 	}
 	n := c.number(1 << (flags & 3))
-	if n > uint64(c.left()) {
+	if n > uint64(min(c.left(), maxName)) {
 		return l, wrong(c.place(), "a link's name of %d bytes does not fit", n)
+	}
+	if err := f.spend(c.place()); err != nil {
+		return l, err
 	}
 	l.name = string(c.take(int(n)))
 	if kind == 0 {

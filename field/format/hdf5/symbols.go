@@ -36,7 +36,13 @@ func (f *File) symbolTable(m message) ([]link, error) {
 			if at >= uint64(len(names.data)) {
 				return wrong(child, "a name lies outside its heap")
 			}
-			name, _, _ := bytes.Cut(names.data[at:], []byte{0})
+			name, _, ended := bytes.Cut(names.data[at:min(at+maxName, uint64(len(names.data)))], []byte{0})
+			if !ended {
+				return wrong(child, "a name has no end")
+			}
+			if err := f.spend(child); err != nil {
+				return err
+			}
 			links = append(links, link{name: string(name), address: address, soft: kind == 2})
 			if len(links) > maxChildren {
 				return wrong(child, "a group has more than %d entries", maxChildren)
@@ -81,7 +87,7 @@ func (f *File) oldNode(address uint64, keyRank, depth int, visit func(key *curso
 		var err error
 		if level > 0 {
 			err = f.oldNode(child, keyRank, depth-1, visit)
-		} else {
+		} else if err = f.spend(child); err == nil {
 			err = visit(key, child)
 		}
 		if err != nil {

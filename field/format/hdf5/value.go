@@ -114,6 +114,9 @@ func (v *Value) readType(c *cursor) error {
 	return c.err
 }
 
+// maxElements bounds the product of the dimensions: what no file that can be held has.
+const maxElements = 1 << 36
+
 // readSpace fills the dimensions from a dataspace message and returns the number of elements.
 func (v *Value) readSpace(c *cursor) (int, error) {
 	at := c.place()
@@ -131,7 +134,7 @@ func (v *Value) readSpace(c *cursor) (int, error) {
 	count := uint64(1)
 	for range rank {
 		n := c.length()
-		if n > math.MaxInt32 || count*max(n, 1) > math.MaxInt32*64 {
+		if n > math.MaxInt32 || n > 0 && count > maxElements/n {
 			return 0, wrong(at, "a dimension of %d is more than is read", n)
 		}
 		count *= n
@@ -143,16 +146,16 @@ func (v *Value) readSpace(c *cursor) (int, error) {
 	return int(count), c.err
 }
 
-// Attribute returns the attribute of that name; nil if there is none.
+// Attribute returns the attribute of that name; nil if there is none. Others may be of kinds that are not read.
 func (o *Object) Attribute(name string) (*Value, error) {
 	for _, m := range o.messages {
 		switch m.kind {
 		case attributeMessage:
 			if m.shared {
-				return nil, wrong(m.at, "shared attributes are not read")
+				continue
 			}
 			got, v, err := o.f.readAttribute(o.f.inside(m))
-			if err != nil || got == name {
+			if got == name {
 				return v, err
 			}
 		case attributeInfo:
@@ -181,7 +184,7 @@ func (o *Object) denseAttribute(m message, name string) (*Value, error) {
 	}
 	for _, a := range objects {
 		got, v, err := o.f.readAttribute(a)
-		if err != nil || got == name {
+		if got == name {
 			return v, err
 		}
 	}
