@@ -137,7 +137,7 @@ func race() error {
 
 // fuzz finds the fuzz targets by asking every package, and gives each a few seconds.
 func fuzz() error {
-	const seconds = "3s"
+	const readers = "shearprint/field/format" // hostile files come in here: these get longer
 	list, err := output(nil, "go", "test", "-run=^$", "-list=^Fuzz", "./...")
 	if err != nil {
 		return err
@@ -152,6 +152,10 @@ func fuzz() error {
 			targets = append(targets, words[0])
 		case words[0] == "ok" && len(words) > 1:
 			for _, name := range targets {
+				seconds := "3s"
+				if strings.HasPrefix(words[1], readers) {
+					seconds = "15s"
+				}
 				errs = append(errs, do(nil, "go", "test", "-run=^$", "-fuzz=^"+name+"$", "-fuzztime="+seconds, words[1]))
 			}
 			targets = nil
