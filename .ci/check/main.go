@@ -156,7 +156,8 @@ func fuzz() error {
 				if strings.HasPrefix(words[1], readers) {
 					seconds = "15s"
 				}
-				errs = append(errs, do(nil, "go", "test", "-run=^$", "-fuzz=^"+name+"$", "-fuzztime="+seconds, words[1]))
+				errs = append(errs, do(nil, "go", "test", "-run=^$", "-fuzz=^"+name+"$", "-fuzztime="+seconds, "-fuzzminimizetime=1s",
+					words[1]))
 			}
 			targets = nil
 		default: // a package without tests
