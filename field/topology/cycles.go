@@ -6,7 +6,6 @@ import (
 	"math"
 
 	"shearprint/field"
-	"shearprint/field/r3"
 	"shearprint/field/trace"
 )
 
@@ -158,8 +157,7 @@ func (o *orbits) take(p *trace.Path, backward bool) (Line, bool) {
 		l.Kind = SeparationLine
 		what = "approach it"
 	}
-	l.Reason = fmt.Sprintf("cycle: a closed streamline; neighbours %s by a factor of %.3g in a turn; strength is the power "+
-		"of e of this", what, r3.Exp(l.Strength))
+	l.Reason = fmt.Sprintf("cycle: a closed streamline; its neighbours %s, %s in a turn", what, fold(l.Strength))
 	o.lines = append(o.lines, l)
 	return l, true
 }

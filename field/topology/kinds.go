@@ -80,22 +80,31 @@ func (b *builder) setKind(l *Line) contraction {
 
 // words tells in words why the line has its kind.
 func (c contraction) words(k Kind) string {
-	factor := fmt.Sprintf("by a factor of %.3g", r3.Exp(math.Min(math.Abs(c.total), mostExponent)))
-	if math.Abs(c.total) > mostExponent {
-		factor = "beyond measure"
-	}
+	factor := fold(c.total)
 	switch k {
 	case SeparationLine:
-		return fmt.Sprintf("neighbouring streamlines close in on it %s, on %.0f %% of its length", factor, 100*c.approach)
+		return fmt.Sprintf("neighbouring streamlines close in on it %s, along %.0f %% of its length", factor, 100*c.approach)
 	case AttachmentLine:
-		return fmt.Sprintf("neighbouring streamlines part from it %s, on %.0f %% of its length", factor, 100*c.part)
+		return fmt.Sprintf("neighbouring streamlines part from it %s, along %.0f %% of its length", factor, 100*c.part)
+	}
+	if c.approach == 0 && c.part == 0 {
+		return "its neighbours neither close in nor part clearly"
 	}
 	what := "close in"
 	if c.total > 0 {
 		what = "part"
 	}
-	return fmt.Sprintf("no clear kind: neighbouring streamlines %s %s in all, on %.0f %% of its length they close in and on "+
-		"%.0f %% they part", what, factor, 100*c.approach, 100*c.part)
+	return fmt.Sprintf("neither kind is clear: its neighbours close in along %.0f %% of its length and part along %.0f %%, "+
+		"and %s %s in all", 100*c.approach, 100*c.part, what, factor)
+}
+
+// fold tells in words the factor whose natural logarithm is given: how many times neighbours come closer or part.
+func fold(exponent float64) string {
+	e := math.Abs(exponent)
+	if e > mostExponent {
+		return "beyond measure"
+	}
+	return fmt.Sprintf("%.2g-fold", r3.Exp(e))
 }
 
 // explain tells type and kind of a separatrix in words.
@@ -110,9 +119,9 @@ func (b *builder) explain(l *Line, c contraction, st start, end string) {
 		p := &b.s.Points[other]
 		to = fmt.Sprintf("%s %s", p.Type, p.ID)
 	}
-	way := fmt.Sprintf("it is born at saddle %s and ends at %s", saddle, to)
+	way := fmt.Sprintf("from saddle %s to %s", saddle, to)
 	if st.backward {
-		way = fmt.Sprintf("it ends at saddle %s and comes from %s", saddle, to)
+		way = fmt.Sprintf("to saddle %s from %s", saddle, to)
 	}
-	l.Reason = fmt.Sprintf("%s: %s; strength is the power of e of this: %s", l.Type, way, c.words(l.Kind))
+	l.Reason = fmt.Sprintf("%s, %s; %s", l.Type, way, c.words(l.Kind))
 }

@@ -236,15 +236,14 @@ func (b *builder) openLine(o *openLine) Line {
 	if o.end >= 0 {
 		to = fmt.Sprintf("%s %s", b.s.Points[o.end].Type, b.s.Points[o.end].ID)
 	}
-	factor := r3.Exp(l.Strength)
+	factor := fold(l.Strength) + " or more" // the bundle's last gap is the least that is measured
 	if backward {
 		l.From, l.To = o.end, -1
-		l.Reason = fmt.Sprintf("open: no saddle takes it; it comes from %s; of a bundle across it neighbours part by a factor "+
-			"of %.3g; strength is the power of e of this", to, factor)
+		l.Reason = fmt.Sprintf("open: from %s, taken up by no saddle; the streamlines of a bundle across it part %s", to, factor)
 		return l
 	}
-	l.Reason = fmt.Sprintf("open: it starts at no critical point, where streamlines begin to converge, and ends at %s; a "+
-		"bundle across it closes in by a factor of %.3g; strength is the power of e of this", to, factor)
+	l.Reason = fmt.Sprintf("open: from where streamlines begin to converge, at no critical point, to %s; a bundle across "+
+		"it closes in %s", to, factor)
 	return l
 }
 

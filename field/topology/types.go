@@ -208,7 +208,7 @@ type Line struct {
 	From, To int
 	Locs     []field.Loc // along the flow
 	Length   float64
-	Strength float64 // of contraction or divergence across the line, in the unit that Reason names
+	Strength float64 // natural logarithm of the factor by which neighbouring streamlines close in on the line, or part from it
 	Reason   string  // of type and kind, in words
 	// Angle is the angle between separation surface and wall at each of Locs [rad]; nil where pressure is unknown or the
 	// line is no separation line.
