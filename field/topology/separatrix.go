@@ -26,6 +26,10 @@ const (
 	sectors = 256
 )
 
+// mostSeparatrices bounds the separatrices that are traced: those of two thousand saddles, more than any flow has that
+// somebody could read, and as many as noise may cost.
+const mostSeparatrices = 8000
+
 // addSeparatrices traces the separatrices of all saddles: those of unstable directions along the flow, those of stable ones
 // against it.
 func (b *builder) addSeparatrices(ctx context.Context) error {
@@ -38,6 +42,11 @@ func (b *builder) addSeparatrices(ctx context.Context) error {
 		case p.Index < 0:
 			starts = append(starts, b.bySectors(p, i)...)
 		}
+	}
+	if left := len(starts) - mostSeparatrices; left > 0 {
+		starts = starts[:mostSeparatrices] // saddles come in the order of falling robustness
+		b.s.tell(field.Doubtful, "separatrices-left-out", left, "", "%d separatrices of the weakest saddles were not traced: so "+
+			"many points are noise; give a noise floor", left)
 	}
 	lines, paths := make([]Line, len(starts)), make([]trace.Path, len(starts))
 	if err := inBlocks(ctx, len(starts), 1, func(from, to int) {
