@@ -15,17 +15,21 @@ type cgnsReader struct {
 	budget int // bytes of data that may still be read
 	nodes  int // nodes that may still be opened
 
-	match    columns // of the first zone with values; its names are asked of the others
+	match    columns // of the first zone with values
 	atFaces  bool    // values belong to faces
-	matched  bool
+	matched  bool    // some zone had values
+	partial  [2]bool // some zones have p, and cp, and others do not
 	cellDim  int
+	volumes  int      // zones of cells whose boundary was taken
 	skipped  []string // zones without values
-	sections int
+	outside  int      // faces of volumes in no condition with values
+	repeated string   // an array of which a zone has several
 }
 
 const (
-	// cgnsBudget bounds the bytes of all arrays together: what the largest run that is accepted needs.
-	cgnsBudget = 1 << 30
+	// cgnsBudget bounds the bytes of all arrays that are read together, and of the points: what the largest run that is
+	// accepted needs.
+	cgnsBudget = 768 << 20
 	// cgnsNodes bounds the nodes; a file of a thousand zones has some tens of thousands.
 	cgnsNodes = 200_000
 )
@@ -70,10 +74,10 @@ func (r *cgnsReader) readBase(base *cgnsNode) error {
 	if err != nil {
 		return err
 	}
-	if len(dims) < 2 || dims[0] < 1 || dims[0] > 3 || dims[1] < 2 || dims[1] > 3 {
+	if dims.len() < 2 || dims.at(0) < 1 || dims.at(0) > 3 || dims.at(1) < 2 || dims.at(1) > 3 {
 		return r.fail(quote(base.name), cgnsRemedy, "the base does not tell its dimensions")
 	}
-	r.cellDim = int(dims[0])
+	r.cellDim = int(dims.at(0))
 	if r.cellDim < 2 {
 		return nil
 	}
@@ -147,14 +151,8 @@ func (r *cgnsReader) finish(bases int) (field.Raw, error) {
 	if bases > 1 {
 		note(raw, field.Note, "more-bases", bases-1, "", "the file has %d bases; the first with a surface was read", bases)
 	}
-	if len(r.skipped) > 0 {
-		note(raw, field.Doubtful, "zones-without-values", len(r.skipped), quote(r.skipped[0]),
-			"%d zones have no wall shear stress and were left out", len(r.skipped))
-	}
-	if r.sections > 0 {
-		note(raw, field.Doubtful, "winding", r.sections, "", "the surface is the boundary of a volume: which side of an open "+
-			"surface the fluid is on is taken from the order of its corners")
-	}
+	r.tellZones()
+	r.dropPartial()
 	r.match.tell(raw)
 	units := raw.Units
 	tau := units.Tau

@@ -20,10 +20,11 @@ func (r *cgnsReader) boundary(z *cgnsZone, into *cgnsValues) error {
 	return nil
 }
 
-// condition reads the data sets of one boundary condition. Their arrays have one number per face of the condition.
+// condition finds the data sets of one boundary condition. Their arrays have one number per face of the condition, or a
+// single one for all.
 func (r *cgnsReader) condition(z *cgnsZone, bc *cgnsNode, into *cgnsValues) error {
 	sets, err := r.labelled(bc, "BCDataSet_t")
-	if err != nil || len(sets) == 0 {
+	if err != nil {
 		return err
 	}
 	for _, set := range sets {
@@ -39,20 +40,22 @@ func (r *cgnsReader) condition(z *cgnsZone, bc *cgnsNode, into *cgnsValues) erro
 		if where != "FaceCenter" && where != "CellCenter" {
 			continue
 		}
-		list, err := r.pointList(set)
-		if err == nil && list == nil {
-			list, err = r.pointList(bc)
+		faces, err := r.pointList(z, set)
+		if err == nil && faces == nil {
+			faces, err = r.pointList(z, bc)
 		}
-		if err != nil || list == nil {
+		if err != nil {
 			return err
 		}
-		index := z.indexIn(list)
+		if faces == nil {
+			continue
+		}
 		data, err := r.labelled(set, "BCData_t")
 		if err != nil {
 			return err
 		}
-		for _, d := range append(data, set) {
-			if err := r.merge(d, z, len(list), index, into); err != nil {
+		for _, d := range append(data[:len(data):len(data)], set) {
+			if err := r.arrays(d, faces.count, faces, into); err != nil {
 				return err
 			}
 		}
@@ -60,46 +63,23 @@ func (r *cgnsReader) condition(z *cgnsZone, bc *cgnsNode, into *cgnsValues) erro
 	return nil
 }
 
-// merge adds arrays of one boundary condition to columns that others may have begun.
-func (r *cgnsReader) merge(n *cgnsNode, z *cgnsZone, want int, index []int, into *cgnsValues) error {
-	more := &cgnsValues{}
-	if err := r.arrays(n, z, want, index, more); err != nil {
-		return err
-	}
-	for k, name := range more.names {
-		fresh := more.columns[k]
-		found := false
-		for j, have := range into.names {
-			if have == name {
-				old := into.columns[j]
-				into.columns[j] = func(i int) float64 {
-					if x := fresh(i); x == x {
-						return x
-					}
-					return old(i)
-				}
-				found = true
-			}
-		}
-		if !found {
-			into.names, into.columns = append(into.names, name), append(into.columns, fresh)
-		}
-	}
-	return nil
+// cgnsFaces are the elements of a condition: listed, or a range from first on.
+type cgnsFaces struct {
+	list  cgnsInts
+	first int64
+	count int
 }
 
-// pointList returns the element numbers of a condition, listed or as a range; nil if it has none.
-func (r *cgnsReader) pointList(n *cgnsNode) ([]int64, error) {
-	for _, name := range []string{"PointList", "ElementList"} {
-		c, err := r.child(n, name)
-		if err != nil {
-			return nil, err
-		}
-		if c != nil {
-			return r.ints(c)
-		}
+func (f *cgnsFaces) element(k int) int64 {
+	if f.list.len() > 0 {
+		return f.list.at(k)
 	}
-	for _, name := range []string{"PointRange", "ElementRange"} {
+	return f.first + int64(k)
+}
+
+// pointList returns the elements of a condition; nil if it has none that are numbered.
+func (r *cgnsReader) pointList(z *cgnsZone, n *cgnsNode) (*cgnsFaces, error) {
+	for _, name := range []string{"PointList", "ElementList", "PointRange", "ElementRange"} {
 		c, err := r.child(n, name)
 		if err != nil {
 			return nil, err
@@ -107,32 +87,22 @@ func (r *cgnsReader) pointList(n *cgnsNode) ([]int64, error) {
 		if c == nil {
 			continue
 		}
-		ends, err := r.ints(c)
-		if err != nil || len(ends) != 2 || ends[1] < ends[0] || ends[1]-ends[0] > maxTriangles {
+		list, err := r.ints(c)
+		if err != nil {
 			return nil, err
 		}
-		var list []int64
-		for e := ends[0]; e <= ends[1]; e++ {
-			list = append(list, e)
+		if name == "PointList" || name == "ElementList" {
+			return &cgnsFaces{list: list, count: list.len()}, nil
 		}
-		return list, nil
+		if list.len() != 2 { // a range of a structured zone
+			return nil, nil
+		}
+		first, last := list.at(0), list.at(1)
+		if first < 1 || last < first || last-first >= maxPoints {
+			return nil, r.fail(z.place+", condition "+quote(n.name), cgnsRemedy, "the range from %d to %d makes no sense",
+				first, last)
+		}
+		return &cgnsFaces{first: first, count: int(last-first) + 1}, nil
 	}
 	return nil, nil
-}
-
-// indexIn returns, per face, its place in a list of element numbers; -1 where it is not in it.
-func (z *cgnsZone) indexIn(list []int64) []int {
-	at := make(map[int64]int, len(list))
-	for i, e := range list {
-		at[e] = i
-	}
-	index := make([]int, len(z.number))
-	for i, e := range z.number {
-		k, ok := at[e]
-		if !ok {
-			k = -1
-		}
-		index[i] = k
-	}
-	return index
 }

@@ -15,6 +15,7 @@ type cgnsNode struct {
 	name     string
 	label    string
 	children []hdf5.Child
+	opened   []*cgnsNode // the children that are nodes, once somebody has asked for them
 }
 
 // broken tells an error of the file below CGNS.
@@ -62,39 +63,48 @@ func cgnsText(b []byte) string {
 	return strings.TrimRight(s, " ")
 }
 
-// labelled opens the children that have one of the labels.
-func (r *cgnsReader) labelled(n *cgnsNode, labels ...string) ([]*cgnsNode, error) {
-	var out []*cgnsNode
-	for _, c := range n.children {
-		if strings.HasPrefix(c.Name, " ") {
-			continue
-		}
-		o, err := c.Open()
-		if err != nil {
-			return nil, r.broken(quote(c.Name), err)
-		}
-		child, err := r.node(o)
-		if err != nil {
-			return nil, err
-		}
-		for _, l := range labels {
-			if child.label == l {
-				out = append(out, child)
+// labelled returns the children that have the label.
+func (r *cgnsReader) labelled(n *cgnsNode, label string) ([]*cgnsNode, error) {
+	if n.opened == nil {
+		n.opened = make([]*cgnsNode, 0, len(n.children))
+		for _, c := range n.children {
+			if strings.HasPrefix(c.Name, " ") {
+				continue
 			}
+			child, err := r.open(c)
+			if err != nil {
+				return nil, err
+			}
+			n.opened = append(n.opened, child)
+		}
+	}
+	var out []*cgnsNode
+	for _, c := range n.opened {
+		if c.label == label {
+			out = append(out, c)
 		}
 	}
 	return out, nil
 }
 
-// child opens the child of that name; nil if there is none.
+func (r *cgnsReader) open(c hdf5.Child) (*cgnsNode, error) {
+	o, err := c.Open()
+	if err != nil {
+		return nil, r.broken(quote(c.Name), err)
+	}
+	return r.node(o)
+}
+
+// child returns the child of that name; nil if there is none.
 func (r *cgnsReader) child(n *cgnsNode, name string) (*cgnsNode, error) {
+	for _, c := range n.opened {
+		if c.name == name {
+			return c, nil
+		}
+	}
 	for _, c := range n.children {
-		if c.Name == name {
-			o, err := c.Open()
-			if err != nil {
-				return nil, r.broken(quote(name), err)
-			}
-			return r.node(o)
+		if c.Name == name && n.opened == nil {
+			return r.open(c)
 		}
 	}
 	return nil, nil
@@ -114,26 +124,29 @@ func (r *cgnsReader) value(n *cgnsNode) (*hdf5.Value, error) {
 		if err != nil {
 			return nil, r.broken(quote(n.name), err)
 		}
-		r.budget -= v.Count() * v.Size
-		return v, nil
+		return v, r.spend(v.Count()*v.Size, quote(n.name))
 	}
 	return nil, nil
 }
 
-// ints reads integers.
-func (r *cgnsReader) ints(n *cgnsNode) ([]int64, error) {
+// spend counts bytes of data.
+func (r *cgnsReader) spend(bytes int, place string) error {
+	if r.budget -= bytes; r.budget < 0 {
+		return r.fail(place, "export the part of interest", "the file has more data than can be held")
+	}
+	return nil
+}
+
+// ints reads integers; there are none where the node has no data.
+func (r *cgnsReader) ints(n *cgnsNode) (cgnsInts, error) {
 	v, err := r.value(n)
 	if err != nil || v == nil {
-		return nil, err
+		return cgnsInts{}, err
 	}
 	if v.Kind != hdf5.Integer {
-		return nil, r.fail(quote(n.name), cgnsRemedy, "there should be integers here")
+		return cgnsInts{}, r.fail(quote(n.name), cgnsRemedy, "there should be integers here")
 	}
-	out := make([]int64, v.Count())
-	for i := range out {
-		out[i] = v.Int(i)
-	}
-	return out, nil
+	return cgnsInts{v}, nil
 }
 
 // text reads the text of the named child; "" if there is none.

@@ -1,137 +1,138 @@
 package format
 
-import (
-	"math"
+import "slices"
 
-	"shearprint/field/r3"
-)
-
-// cgnsValues are the columns of a zone: at its vertices, or at its faces in their order.
-type cgnsValues struct {
-	names   []string
-	columns []func(i int) float64 // by face or vertex number; NaN where unknown
-	atFaces bool
+// cgnsArray is an array of a zone whose numbers have not been read yet.
+type cgnsArray struct {
+	node  *cgnsNode
+	count int
+	faces *cgnsFaces // whose numbers they are; nil for those of all faces or points in their order
 }
 
-// values reads the solutions and boundary data of a zone. Face values win over vertex values.
-func (r *cgnsReader) values(z *cgnsZone) (*cgnsValues, error) {
-	vertex, face := &cgnsValues{}, &cgnsValues{atFaces: true}
+// cgnsValues are the names of a zone's arrays, at its points or at its faces, and under each name the arrays that have it:
+// those of several boundary conditions.
+type cgnsValues struct {
+	names  []string
+	arrays [][]cgnsArray
+}
+
+// values finds the solutions and boundary data of a zone and tells which arrays are tau, p and cp. Face values win over
+// point values. The columns have no tau where the zone has none.
+func (r *cgnsReader) values(z *cgnsZone) (*cgnsValues, columns, error) {
+	points, faces := &cgnsValues{}, &cgnsValues{}
 	solutions, err := r.labelled(z.node, "FlowSolution_t")
 	if err != nil {
-		return nil, err
+		return nil, columns{}, err
 	}
 	for _, s := range solutions {
 		where, err := r.text(s, "GridLocation")
 		if err != nil {
-			return nil, err
+			return nil, columns{}, err
 		}
 		switch {
 		case where == "" || where == "Vertex":
-			err = r.arrays(s, z, z.points(), nil, vertex)
+			err = r.arrays(s, z.points(), nil, points)
 		case (where == "CellCenter" || where == "FaceCenter") && !z.volume:
-			err = r.arrays(s, z, z.cellCount(), z.cellIndex(), face)
+			err = r.arrays(s, z.cellCount(), nil, faces)
 		}
 		if err != nil {
-			return nil, err
+			return nil, columns{}, err
 		}
 	}
-	if err := r.boundary(z, face); err != nil {
-		return nil, err
+	if err := r.boundary(z, faces); err != nil {
+		return nil, columns{}, err
 	}
-	c := matchColumns(r.source, face.names, r.opt)
+	c := matchColumns(r.source, faces.names, r.opt)
 	if c.tau[0] >= 0 {
-		return face, r.settle(c, true)
+		return faces, c, r.settle(z, c, true)
 	}
-	c = matchColumns(r.source, vertex.names, r.opt)
+	c = matchColumns(r.source, points.names, r.opt)
 	if c.tau[0] >= 0 {
-		return vertex, r.settle(c, false)
+		return points, c, r.settle(z, c, false)
 	}
-	if !r.matched {
-		r.match = c
-	}
-	return nil, nil
+	return nil, c, nil
 }
 
-// settle keeps how the names of the first zone with values were understood; other zones must agree in what they are of.
-func (r *cgnsReader) settle(c columns, atFaces bool) error {
-	if r.matched && atFaces != r.atFaces {
-		return r.fail("", "write all zones alike", "some zones have their values at vertices, others at faces")
+// settle keeps how the names of the first zone with values were understood; other zones must have the same at the same
+// places. What came before without values is left out.
+func (r *cgnsReader) settle(z *cgnsZone, c columns, atFaces bool) error {
+	if !r.matched {
+		r.match, r.atFaces, r.matched = c, atFaces, true
+		r.raw.Points, r.raw.Tris, r.raw.Face, r.volumes = nil, nil, nil, 0
+		return nil
 	}
-	r.match, r.atFaces, r.matched = c, atFaces, true
+	if atFaces != r.atFaces {
+		return r.fail(z.place, "write all zones alike", "some zones have their values at points, others at faces")
+	}
+	if c.coefficient != r.match.coefficient {
+		return r.fail(z.place, "write all zones alike, or name the array with --tau",
+			"some zones have the wall shear stress, others its coefficient")
+	}
 	return nil
 }
 
-// cellIndex returns, per face, its place in arrays over the zone's cells.
-func (z *cgnsZone) cellIndex() []int {
-	index := make([]int, len(z.faces))
-	for i := range index {
-		index[i] = i
-	}
-	return index
-}
-
-// arrays adds the arrays below a node as columns. index maps faces to elements of the arrays; nil for one to one.
-func (r *cgnsReader) arrays(n *cgnsNode, z *cgnsZone, want int, index []int, into *cgnsValues) error {
+// arrays adds the arrays below a node.
+func (r *cgnsReader) arrays(n *cgnsNode, count int, faces *cgnsFaces, into *cgnsValues) error {
 	list, err := r.labelled(n, "DataArray_t")
 	if err != nil {
 		return err
 	}
 	for _, a := range list {
-		v, err := r.numbers(a, want, z.place)
-		if err != nil {
-			return err
+		k := slices.Index(into.names, a.name)
+		if k < 0 {
+			if k = len(into.names); k >= maxColumns {
+				return r.fail(quote(n.name), "export what is needed", "there are more than %d arrays", maxColumns)
+			}
+			into.names, into.arrays = append(into.names, a.name), append(into.arrays, nil)
 		}
-		into.names = append(into.names, a.name)
-		into.columns = append(into.columns, func(i int) float64 {
-			if index != nil {
-				i = index[i]
-			}
-			if i < 0 || i >= v.Count() {
-				return math.NaN()
-			}
-			return v.Float(i)
-		})
+		into.arrays[k] = append(into.arrays[k], cgnsArray{a, count, faces})
 	}
 	return nil
 }
 
-// cgnsColumns are the columns of a zone that hold tau, p and cp.
-type cgnsColumns struct {
-	tau   [3]func(i int) float64
-	p, cp func(i int) float64
-	has   [2]bool // the run has p and cp
-}
-
-// pick finds the run's columns among the zone's by name. One that is missing gives NaN.
-func (r *cgnsReader) pick(v *cgnsValues) *cgnsColumns {
-	none := func(int) float64 { return math.NaN() }
-	column := func(col int) func(int) float64 {
-		if col < 0 {
-			return none
+// fill hands out the numbers of a column: to the zone's points, or to each triangle of its faces.
+func (r *cgnsReader) fill(z *cgnsZone, v *cgnsValues, col int, set func(i int, x float64)) error {
+	whole := 0
+	for _, a := range v.arrays[col] {
+		got, err := r.numbers(a, z.place)
+		if err != nil {
+			return err
 		}
-		for k, name := range v.names {
-			if name == r.match.name(col) {
-				return v.columns[k]
+		switch {
+		case a.faces != nil:
+			for k := range a.count {
+				z.put(a.faces.element(k), got.Float(min(k, got.Count()-1)), set)
 			}
+		case r.atFaces:
+			for i := range min(got.Count(), len(z.ends)) {
+				z.putFace(i, got.Float(i), set)
+			}
+			whole++
+		default:
+			for i := range got.Count() {
+				if k := z.point(i); k >= 0 {
+					set(k, got.Float(i))
+				}
+			}
+			whole++
 		}
-		return none
 	}
-	c := &cgnsColumns{p: column(r.match.p), cp: column(r.match.cp), has: [2]bool{r.match.p >= 0, r.match.cp >= 0}}
-	for k := range 3 {
-		c.tau[k] = column(r.match.tau[k])
-		if r.match.tau[k] < 0 { // a plane surface may leave the third component out
-			c.tau[k] = func(int) float64 { return 0 }
-		}
+	if whole > 1 {
+		r.repeated = v.names[col]
 	}
-	return c
+	return nil
 }
 
-func (c *cgnsColumns) append(i int, tau *[]r3.Vec, p, cp *[]float64) {
-	*tau = append(*tau, r3.Vec{X: c.tau[0](i), Y: c.tau[1](i), Z: c.tau[2](i)})
-	if c.has[0] {
-		*p = append(*p, c.p(i))
+// put hands a number to the triangles of the face that the element is.
+func (z *cgnsZone) put(element int64, x float64, set func(i int, x float64)) {
+	if i := z.faceOf(element); i >= 0 {
+		z.putFace(i, x, set)
 	}
-	if c.has[1] {
-		*cp = append(*cp, c.cp(i))
+}
+
+// putFace hands a number to the triangles of face i.
+func (z *cgnsZone) putFace(i int, x float64, set func(i int, x float64)) {
+	for t := z.start(i) - 2*i; t < int(z.ends[i])-2*(i+1); t++ {
+		set(t, x)
 	}
 }

@@ -26,6 +26,7 @@ func TestMemoryOfReading(t *testing.T) {
 	}
 	for name, data := range map[string][]byte{
 		"ply": plyOf(t, raw), "glb": glb.Bytes(), "table": table.Bytes(), "stl": stlOf(raw), "gltf": dataURIOf(glb.Bytes()),
+		"cgns": []byte(cgnsOf(raw)),
 	} {
 		var before, after runtime.MemStats
 		runtime.ReadMemStats(&before)
