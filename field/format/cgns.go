@@ -90,7 +90,27 @@ func (r *cgnsReader) readBase(base *cgnsNode) error {
 			return err
 		}
 	}
+	if len(zones) > 1 && len(r.raw.Tris) > 0 {
+		note(&r.raw, field.Note, "joined-zones", len(zones), "", "%d zones were read as one run", len(zones))
+	}
+	if err := r.tellSteps(base); err != nil {
+		return err
+	}
 	return r.readUnits(base)
+}
+
+// tellSteps says where a base holds several time steps, whose zones or solutions would lie on top of one another.
+func (r *cgnsReader) tellSteps(base *cgnsNode) error {
+	list, err := r.labelled(base, "BaseIterativeData_t")
+	if err != nil || len(list) == 0 {
+		return err
+	}
+	steps, err := r.ints(list[0])
+	if err == nil && steps.len() > 0 && steps.at(0) > 1 {
+		note(&r.raw, field.Doubtful, "time-steps", int(min(steps.at(0), maxTriangles)), "", "the file holds several time steps; "+
+			"the first solution of each zone counts, and zones of other steps lie on top: export one step by itself")
+	}
+	return err
 }
 
 // cgnsLengths are the standard's names of units of length.

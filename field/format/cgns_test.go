@@ -193,6 +193,19 @@ func TestSpoiltCGNS(t *testing.T) {
 	}
 }
 
+func TestTimeStepsAreTold(t *testing.T) {
+	raw, err := format.Read("steps.cgns", writtenCGNS(t, "steps", 4), format.Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, f := range raw.Findings {
+		if f.Code == "time-steps" && f.Count == 3 {
+			return
+		}
+	}
+	t.Errorf("the three time steps are not told: %+v", raw.Findings)
+}
+
 func TestRefusedCGNS(t *testing.T) {
 	for _, c := range []struct{ what, data, want string }{
 		{"the older form", "@(#)ADF Database Version A02011>", "older ADF form"},

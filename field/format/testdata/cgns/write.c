@@ -156,10 +156,12 @@ int main(int argc, char **argv) {
 				offsets[i] = 4 * i;
 			check(cg_poly_section_write(f, b, zone, "faces", CGNS_ENUMV(NGON_n), 1, C, 0, e, offsets, &s));
 			solution(f, b, zone, 0, "CoefSkinFriction", "CoefPressure");
-		} else { /* quads, feet, many: a section in two halves, written in the wrong order */
+		} else { /* quads, feet, steps, many: a section in two halves, written in the wrong order */
 			check(cg_section_write(f, b, zone, "upper", CGNS_ENUMV(QUAD_4), C / 2 + 1, C, 0, e + 2 * C, &s));
 			check(cg_section_write(f, b, zone, "lower", CGNS_ENUMV(QUAD_4), 1, C / 2, 0, e, &s));
 			solution(f, b, zone, 1, "SkinFriction", "Pressure");
+			if (strcmp(kind, "steps") == 0)
+				check(cg_biter_write(f, b, "TimeIterValues", 3));
 			for (int i = 0; strcmp(kind, "many") == 0 && i < 300; i++) { /* so many nodes that their links go into a heap */
 				char name[32];
 				snprintf(name, sizeof name, "remark%03d", i);
