@@ -20,6 +20,7 @@ type cgnsReader struct {
 	matched  bool    // some zone had values
 	partial  [2]bool // some zones have p, and cp, and others do not
 	cellDim  int
+	zones    int      // that were joined
 	volumes  int      // zones of cells whose boundary was taken
 	skipped  []string // zones without values
 	outside  int      // faces of volumes in no condition with values
@@ -90,8 +91,8 @@ func (r *cgnsReader) readBase(base *cgnsNode) error {
 			return err
 		}
 	}
-	if len(zones) > 1 && len(r.raw.Tris) > 0 {
-		note(&r.raw, field.Note, "joined-zones", len(zones), "", "%d zones were read as one run", len(zones))
+	if r.zones > 1 {
+		note(&r.raw, field.Note, "joined-zones", r.zones, "", "%d zones were read as one run", r.zones)
 	}
 	if err := r.tellSteps(base); err != nil {
 		return err
@@ -108,7 +109,7 @@ func (r *cgnsReader) tellSteps(base *cgnsNode) error {
 	steps, err := r.ints(list[0])
 	if err == nil && steps.len() > 0 && steps.at(0) > 1 {
 		note(&r.raw, field.Doubtful, "time-steps", int(min(steps.at(0), maxTriangles)), "", "the file holds several time steps; "+
-			"the first solution of each zone counts, and zones of other steps lie on top: export one step by itself")
+			"the last solution of each zone counts, and zones of other steps lie on top: export one step by itself")
 	}
 	return err
 }

@@ -48,6 +48,7 @@ func (r *cgnsReader) add(z *cgnsZone, points []r3.Vec, v *cgnsValues, c columns)
 		}
 		fan(raw, number+i, moved)
 	}
+	r.zones++
 	return nil
 }
 
@@ -82,7 +83,7 @@ func (r *cgnsReader) addValues(z *cgnsZone, points int, v *cgnsValues, c columns
 		all        *[]float64
 	}{{c.p, r.match.p, p}, {c.cp, r.match.cp, cp}} {
 		if s.col < 0 || s.first < 0 {
-			r.partial[k] = r.partial[k] || s.col != s.first && (s.col < 0) != (s.first < 0)
+			r.partial[k] = r.partial[k] || (s.col < 0) != (s.first < 0)
 			continue
 		}
 		x := make([]float64, n)

@@ -58,7 +58,7 @@ func (r *cgnsReader) values(z *cgnsZone) (*cgnsValues, columns, error) {
 func (r *cgnsReader) settle(z *cgnsZone, c columns, atFaces bool) error {
 	if !r.matched {
 		r.match, r.atFaces, r.matched = c, atFaces, true
-		r.raw.Points, r.raw.Tris, r.raw.Face, r.volumes = nil, nil, nil, 0
+		r.raw.Points, r.raw.Tris, r.raw.Face, r.zones, r.volumes = nil, nil, nil, 0, 0
 		return nil
 	}
 	if atFaces != r.atFaces {

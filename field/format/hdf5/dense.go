@@ -64,7 +64,6 @@ type heap struct {
 	direct      uint64 // largest size of a block that holds objects
 	root        uint64
 	rows        uint64 // of the root if it is an indirect block; 0 if it holds objects
-	blockHead   int
 }
 
 func (f *File) openHeap(address uint64) (*heap, error) {
@@ -73,7 +72,7 @@ func (f *File) openHeap(address uint64) (*heap, error) {
 	c.skip(1)
 	h := &heap{f: f, idLength: int(c.u16())}
 	filters := c.u16()
-	flags := c.u8()
+	c.skip(1)
 	largest := uint64(c.u32())
 	for range 2 {
 		c.length()
@@ -97,10 +96,6 @@ func (f *File) openHeap(address uint64) (*heap, error) {
 	}
 	h.offsetBytes = (maxBits + 7) / 8
 	h.lengthBytes = min((bits.Len64(h.direct-1)+7)/8, (bits.Len64(largest)+7)/8)
-	h.blockHead = 5 + f.offsets + h.offsetBytes
-	if flags&2 != 0 {
-		h.blockHead += 4
-	}
 	return h, nil
 }
 

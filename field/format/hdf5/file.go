@@ -205,6 +205,15 @@ func (c *cursor) address() uint64 {
 
 func (c *cursor) length() uint64 { return c.number(c.f.lengths) }
 
+// limit reads a length, of which all ones say that there is no limit.
+func (c *cursor) limit() uint64 {
+	n := c.length()
+	if c.f.lengths == 4 && n == math.MaxUint32 {
+		return undefined
+	}
+	return n
+}
+
 // expect reads a block's signature.
 func (c *cursor) expect(sign string) {
 	at := c.place()

@@ -23,6 +23,7 @@ type Value struct {
 
 	order  binary.ByteOrder
 	signed bool
+	limits []uint64 // to which each of Dims may grow; undefined for any
 	data   []byte
 }
 
@@ -121,7 +122,7 @@ const maxElements = 1 << 36
 func (v *Value) readSpace(c *cursor) (int, error) {
 	at := c.place()
 	version, rank := c.u8(), int(c.u8())
-	c.skip(1)
+	limited := c.u8()&1 != 0
 	null := false
 	switch version {
 	case 1:
@@ -139,6 +140,10 @@ func (v *Value) readSpace(c *cursor) (int, error) {
 		}
 		count *= n
 		v.Dims = append(v.Dims, int(n))
+		v.limits = append(v.limits, n)
+	}
+	for k := 0; limited && k < rank; k++ {
+		v.limits[k] = max(v.limits[k], c.limit())
 	}
 	if null {
 		count = 0
