@@ -108,8 +108,8 @@ func (r *cgnsReader) tellSteps(base *cgnsNode) error {
 	}
 	steps, err := r.ints(list[0])
 	if err == nil && steps.len() > 0 && steps.at(0) > 1 {
-		note(&r.raw, field.Doubtful, "time-steps", int(min(steps.at(0), maxTriangles)), "", "the file holds several time steps; "+
-			"the last solution of each zone counts, and zones of other steps lie on top: export one step by itself")
+		note(&r.raw, field.Doubtful, "time-steps", int(min(steps.at(0), maxTriangles)), "",
+			"the file holds several time steps; the last solution of each zone counts, and zones of other steps lie on top: export one step by itself")
 	}
 	return err
 }
@@ -147,7 +147,8 @@ func (r *cgnsReader) readUnits(base *cgnsNode) error {
 			stress = "Pa"
 		}
 		if length == "" && words[1] != "Null" && words[1] != "UserDefined" {
-			note(&r.raw, field.Doubtful, "unknown-unit", 0, "", "the unit of length %s is not known; give --unit", quote(words[1]))
+			note(&r.raw, field.Doubtful, "unknown-unit", 0, "", "the unit of length %s is not known; give --unit",
+				quote(words[1]))
 		}
 	}
 	r.raw.Units = field.Units{Length: length, Tau: stress, P: stress}

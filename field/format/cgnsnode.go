@@ -8,8 +8,8 @@ import (
 	"shearprint/field/format/hdf5"
 )
 
-// cgnsNode is a node of the tree of AIAA's CGNS standard in its HDF5 form: a group whose attributes are the node's label
-// and type, and whose dataset " data" is its value.
+// cgnsNode is a node of the tree of AIAA's CGNS standard in its HDF5 form: a group whose attributes are the node's
+// label and type, and whose dataset " data" is its value.
 type cgnsNode struct {
 	object   *hdf5.Object
 	name     string

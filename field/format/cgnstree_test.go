@@ -52,7 +52,8 @@ func (n *node) add(kids ...*node) { n.kids = append(n.kids, kids...) }
 func (n *node) file() string {
 	w := &treeWriter{data: make([]byte, 48)}
 	root := w.node(n)
-	copy(w.data, join("\x89HDF\r\n\x1a\n", [4]byte{2, 8, 8, 0}, uint64(0), uint64(math.MaxUint64), uint64(len(w.data)), root))
+	copy(w.data, join("\x89HDF\r\n\x1a\n", [4]byte{2, 8, 8, 0}, uint64(0), uint64(math.MaxUint64),
+		uint64(len(w.data)), root))
 	return string(w.data)
 }
 
@@ -341,7 +342,9 @@ func cgnsBad() []bad {
 	})
 	spoil("no coordinates", "no coordinates", func(_, z *node) { z.drop("GridCoordinates") })
 	spoil("no y", "no CoordinateY", func(_, z *node) { z.at("GridCoordinates").drop("CoordinateY") })
-	spoil("too few x", "3 numbers where", func(_, z *node) { z.at("GridCoordinates/CoordinateX").data = []float64{1, 2, 3} })
+	spoil("too few x", "3 numbers where", func(_, z *node) {
+		z.at("GridCoordinates/CoordinateX").data = []float64{1, 2, 3}
+	})
 	spoil("x in words", "0 numbers where", func(_, z *node) { z.at("GridCoordinates/CoordinateX").data = nil })
 	spoil("no elements", "no surface", func(_, z *node) { z.drop("Elements") })
 	spoil("no type of element", "type of element", func(_, z *node) { z.at("Elements").data = nil })

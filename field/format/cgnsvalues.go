@@ -9,8 +9,8 @@ type cgnsArray struct {
 	faces *cgnsFaces // whose numbers they are; nil for those of all faces or points in their order
 }
 
-// cgnsValues are the names of a zone's arrays, at its points or at its faces, and under each name the arrays that have it:
-// those of several boundary conditions.
+// cgnsValues are the names of a zone's arrays, at its points or at its faces, and under each name the arrays that have
+// it: those of several boundary conditions.
 type cgnsValues struct {
 	names  []string
 	arrays [][]cgnsArray

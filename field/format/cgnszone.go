@@ -34,8 +34,8 @@ func (z *cgnsZone) room(faces, corners int) {
 	z.ends, z.corners = slices.Grow(z.ends, faces), slices.Grow(z.corners, corners)
 }
 
-// close makes a face of the corners that were added since the last, and gives it the number of its element. Numbers come
-// in rising order.
+// close makes a face of the corners that were added since the last, and gives it the number of its element. Numbers
+// come in rising order.
 func (z *cgnsZone) close(element int64) {
 	face := len(z.ends)
 	z.ends = append(z.ends, int32(len(z.corners)))

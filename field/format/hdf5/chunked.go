@@ -144,7 +144,8 @@ func (v *Value) holds(chunk []int, offset []uint64) bool {
 const maxChunk = 1 << 28
 
 // inRow reads chunks that lie one after the other, the last dimension running fastest.
-func (v *Value) inRow(l *layout, chunkSize uint64, put func(address, stored uint64, mask uint32, offset []uint64) error) error {
+func (v *Value) inRow(l *layout, chunkSize uint64,
+	put func(address, stored uint64, mask uint32, offset []uint64) error) error {
 	offset := make([]uint64, len(l.chunk))
 	for address := l.address; ; address += chunkSize {
 		if err := put(address, chunkSize, 0, offset); err != nil {

@@ -99,7 +99,8 @@ func (c *chunks) widthFits(width int) bool {
 
 const checksumSize = 4
 
-// paged reads a data block of n elements that is cut into pages, each with a checksum; has tells which pages were written.
+// paged reads a data block of n elements that is cut into pages, each with a checksum; has tells which pages were
+// written.
 func (c *chunks) paged(b *cursor, first, n, page uint64, width int, has func(page uint64) bool) error {
 	for k := uint64(0); k*page < n; k++ {
 		m := min(page, n-k*page)
@@ -155,8 +156,8 @@ func (c *chunks) fixedArray() error {
 	return c.paged(b, 0, count, page, width, func(k uint64) bool { return bit(bitmap, k) })
 }
 
-// extensible is the index of datasets that can grow in one dimension: the first elements lie in the index block, the others
-// in data blocks whose number and size double by turns from one super block to the next.
+// extensible is the index of datasets that can grow in one dimension: the first elements lie in the index block, the
+// others in data blocks whose number and size double by turns from one super block to the next.
 type extensible struct {
 	*chunks
 	width        int

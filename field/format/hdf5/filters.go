@@ -42,7 +42,8 @@ func (o *Object) filters() (pipeline, error) {
 		}
 		c.skip(nameSize + 4*values)
 		if c.err == nil && (id < deflateFilter || id > fletcherFilter) {
-			return nil, wrong(m.at, "%q is packed with filter %d, which is not read; write it with deflate or unpacked", o.Name, id)
+			return nil, wrong(m.at, "%q is packed with filter %d, which is not read; write it with deflate or unpacked",
+				o.Name, id)
 		}
 		p = append(p, id)
 	}

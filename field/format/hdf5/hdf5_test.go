@@ -221,7 +221,7 @@ func TestNoHDF5(t *testing.T) {
 
 func FuzzHDF5(f *testing.F) {
 	f.Add([]byte(hdf5.Signature))
-	for _, name := range []string{"new.h5", "old.h5"} {
+	for _, name := range []string{"new.h5", "old.h5", "fixed.h5", "extensible.h5", "tree.h5"} {
 		data, err := os.ReadFile(filepath.Join("testdata", name))
 		if err != nil {
 			f.Fatal(err)

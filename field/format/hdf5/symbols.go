@@ -53,8 +53,8 @@ func (f *File) symbolTable(m message) ([]link, error) {
 	return links, err
 }
 
-// oldTree visits the children of a version 1 B-tree's lowest level, each with its key. keyRank is 0 for groups, the number
-// of chunk offsets for chunks.
+// oldTree visits the children of a version 1 B-tree's lowest level, each with its key. keyRank is 0 for groups, the
+// number of chunk offsets for chunks.
 func (f *File) oldTree(address uint64, keyRank int, visit func(key *cursor, child uint64) error) error {
 	return f.oldNode(address, keyRank, 64, visit)
 }
