@@ -109,7 +109,8 @@ func (r *gltfReader) readSparse(a *accessor, s *gltfSparse, place string) error 
 	isize := componentSize[s.Indices.ComponentType]
 	vsize := componentSize[a.typ] * a.width
 	unsigned := s.Indices.ComponentType&1 == 1 && s.Indices.ComponentType != 5126
-	if isize == 0 || !unsigned || s.Count < 0 || s.Indices.ByteOffset < 0 || s.Values.ByteOffset < 0 ||
+	// The specification has each element replaced once: many accessors over one large list cost no more than they hold.
+	if isize == 0 || !unsigned || s.Count < 0 || s.Count > a.count || s.Indices.ByteOffset < 0 || s.Values.ByteOffset < 0 ||
 		s.Indices.ByteOffset > len(indices) || s.Count > (len(indices)-s.Indices.ByteOffset)/isize ||
 		s.Values.ByteOffset > len(values) || s.Count > (len(values)-s.Values.ByteOffset)/vsize {
 		return r.fail(place, "export again", "its sparse part does not fit its views")

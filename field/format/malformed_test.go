@@ -184,6 +184,8 @@ func TestMalformedGLTF(t *testing.T) {
 			"values": object{"bufferView": 0}}), "element 128 of 3"},
 		{"sparse count", sparse(object{"count": 1 << 40, "indices": object{"bufferView": 2, "componentType": 5121},
 			"values": object{"bufferView": 0}}), "sparse"},
+		{"sparse count above the elements", doc(acc(2, object{"sparse": object{"count": 4,
+			"indices": object{"bufferView": 0, "componentType": 5121}, "values": object{"bufferView": 0}}})), "sparse"},
 		{"sparse of floats", sparse(object{"count": 1, "indices": object{"bufferView": 2, "componentType": 5126},
 			"values": object{"bufferView": 0}}), "sparse"},
 		{"sparse view", sparse(object{"count": 1, "indices": object{"bufferView": 7, "componentType": 5121},
