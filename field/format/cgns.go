@@ -31,6 +31,11 @@ const (
 	// cgnsBudget bounds the bytes of all arrays that are read together, and of the points: what the largest run that is
 	// accepted needs.
 	cgnsBudget = 768 << 20
+	// pointBytes are what a point's number, or a corner's, takes, before it is known that the file has its coordinates.
+	pointBytes = 4
+	// elementBytes are charged for an element of a condition, which costs time rather than memory: a range names many
+	// in few bytes.
+	elementBytes = 16
 	// cgnsNodes bounds the nodes; a file of a thousand zones has some tens of thousands.
 	cgnsNodes = 200_000
 )

@@ -92,7 +92,7 @@ func (r *cgnsReader) pointList(z *cgnsZone, n *cgnsNode) (*cgnsFaces, error) {
 			return nil, err
 		}
 		if name == "PointList" || name == "ElementList" {
-			return &cgnsFaces{list: list, count: list.len()}, nil
+			return &cgnsFaces{list: list, count: list.len()}, r.spend(elementBytes*list.len(), z.place)
 		}
 		if list.len() != 2 { // a range of a structured zone
 			return nil, nil
@@ -102,7 +102,8 @@ func (r *cgnsReader) pointList(z *cgnsZone, n *cgnsNode) (*cgnsFaces, error) {
 			return nil, r.fail(z.place+", condition "+quote(n.name), cgnsRemedy, "the range from %d to %d makes no sense",
 				first, last)
 		}
-		return &cgnsFaces{first: first, count: int(last-first) + 1}, nil
+		count := int(last-first) + 1
+		return &cgnsFaces{first: first, count: count}, r.spend(elementBytes*count, z.place)
 	}
 	return nil, nil
 }

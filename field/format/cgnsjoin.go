@@ -9,7 +9,7 @@ import (
 )
 
 // add joins the zone to the run. The columns say which of its values are what; v is nil where it has none.
-func (r *cgnsReader) add(z *cgnsZone, points []r3.Vec, v *cgnsValues, c columns) error {
+func (r *cgnsReader) add(z *cgnsZone, v *cgnsValues, c columns) error {
 	raw := &r.raw
 	if v == nil {
 		r.skipped = append(r.skipped, z.node.name)
@@ -22,19 +22,24 @@ func (r *cgnsReader) add(z *cgnsZone, points []r3.Vec, v *cgnsValues, c columns)
 		r.outside += z.onlyFaces(v.arrays[c.tau[0]])
 	}
 	if z.volume {
-		points = z.compact(points)
 		r.volumes++
 	}
-	if len(raw.Points)+len(points) > maxPoints || len(raw.Tris)+z.triangles() > maxTriangles {
+	if len(raw.Tris)+z.triangles() > maxTriangles { // which bounds the points that they have
 		return r.tooLarge(z)
 	}
+	first := int32(len(raw.Points))
+	if err := r.spend(pointBytes*z.points(), z.place); err != nil {
+		return err
+	}
+	count := z.compact()
+	if err := r.coordinates(z, count); err != nil {
+		return err
+	}
 	if v != nil {
-		if err := r.addValues(z, len(points), v, c); err != nil {
+		if err := r.addValues(z, count, v, c); err != nil {
 			return err
 		}
 	}
-	first := int32(len(raw.Points))
-	raw.Points = append(raw.Points, points...)
 	raw.Tris = slices.Grow(raw.Tris, z.triangles())
 	number := 0
 	if len(raw.Tris) > 0 {

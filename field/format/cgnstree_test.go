@@ -411,6 +411,9 @@ func cgnsBad() []bad {
 	volume("range of a condition without end", "makes no sense", func(z *node) {
 		z.at("ZoneBC/ranged/PointRange").data = []int64{1, math.MaxInt64}
 	})
+	volume("range of a condition longer than the file", "more data than can be held", func(z *node) {
+		z.at("ZoneBC/ranged/PointRange").data = []int64{1, 1 << 27}
+	})
 	volume("too many numbers in a condition", "3 numbers where", func(z *node) {
 		z.at("ZoneBC/listed/Set/NeumannData/SkinFrictionX").data = []float64{1, 2, 3}
 	})

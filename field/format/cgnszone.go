@@ -5,7 +5,6 @@ import (
 	"slices"
 
 	"shearprint/field/format/hdf5"
-	"shearprint/field/r3"
 )
 
 // cgnsZone is a zone while it is read.
@@ -20,7 +19,7 @@ type cgnsZone struct {
 	corners []int32 // of all faces, one after the other: numbers of the zone's points from 0
 	ends    []int32 // of each face in corners
 	runs    []cgnsRun
-	moved   []int32 // where compact put each point, -1 for none; nil for where it was
+	moved   []int32 // the run's number of each point within the zone, -1 for those of no face; nil where all are kept
 }
 
 // cgnsRun says that elements with numbers in a row are faces in a row.
@@ -65,7 +64,7 @@ func (z *cgnsZone) start(i int) int {
 	return int(z.ends[i-1])
 }
 
-// point returns where a point is after compact; -1 for one that is left out.
+// point returns the number of a point among those that are kept; -1 for one that is left out.
 func (z *cgnsZone) point(i int) int {
 	if z.moved == nil {
 		return i
@@ -99,24 +98,31 @@ func (z *cgnsZone) onlyFaces(conditions []cgnsArray) (dropped int) {
 	return len(old.ends) - len(z.ends)
 }
 
-// compact returns the points that faces have: of a volume most are inside.
-func (z *cgnsZone) compact(points []r3.Vec) []r3.Vec {
-	z.moved = make([]int32, len(points))
+// compact numbers the points that faces have, and returns how many they are: of a volume most are inside, and curved
+// faces have more than their corners.
+func (z *cgnsZone) compact() int {
+	all := z.points()
+	if z.structured {
+		return all
+	}
+	moved := make([]int32, all)
 	for _, p := range z.corners {
-		z.moved[p] = 1
+		moved[p] = 1
 	}
 	n := int32(0)
-	for i, p := range points {
-		if z.moved[i]--; z.moved[i] == 0 {
-			z.moved[i] = n
-			points[n] = p
+	for i := range moved {
+		if moved[i]--; moved[i] == 0 {
+			moved[i] = n
 			n++
 		}
 	}
-	for i, p := range z.corners {
-		z.corners[i] = z.moved[p]
+	if int(n) < all {
+		z.moved = moved
+		for i, p := range z.corners {
+			z.corners[i] = moved[p]
+		}
 	}
-	return points[:n]
+	return int(n)
 }
 
 // triangles returns how many triangles the faces make.
@@ -127,23 +133,18 @@ func (r *cgnsReader) readZone(n *cgnsNode) error {
 	if err := r.zoneSize(z); err != nil {
 		return err
 	}
-	points, err := r.coordinates(z)
-	if err != nil {
-		return err
-	}
+	read := r.elements
 	if z.structured {
-		err = r.patch(z)
-	} else {
-		err = r.elements(z)
+		read = r.patch
 	}
-	if err != nil || len(z.ends) == 0 {
+	if err := read(z); err != nil || len(z.ends) == 0 {
 		return err
 	}
 	values, c, err := r.values(z)
 	if err != nil {
 		return err
 	}
-	return r.add(z, points, values, c)
+	return r.add(z, values, c)
 }
 
 func (r *cgnsReader) zoneSize(z *cgnsZone) error {
@@ -201,13 +202,14 @@ func (z *cgnsZone) cellCount() int {
 	return n
 }
 
-func (r *cgnsReader) coordinates(z *cgnsZone) ([]r3.Vec, error) {
+// coordinates adds the zone's points, count of which are kept, to the run.
+func (r *cgnsReader) coordinates(z *cgnsZone, count int) error {
 	grids, err := r.labelled(z.node, "GridCoordinates_t")
 	if err != nil {
-		return nil, err
+		return err
 	}
 	if len(grids) == 0 {
-		return nil, r.fail(z.place, cgnsRemedy, "it has no coordinates")
+		return r.fail(z.place, cgnsRemedy, "it has no coordinates")
 	}
 	grid := grids[0]
 	for _, g := range grids {
@@ -215,33 +217,35 @@ func (r *cgnsReader) coordinates(z *cgnsZone) ([]r3.Vec, error) {
 			grid = g
 		}
 	}
-	points := make([]r3.Vec, 0)
+	raw := &r.raw
+	first := len(raw.Points)
 	for k, name := range []string{"CoordinateX", "CoordinateY", "CoordinateZ"} {
 		c, err := r.child(grid, name)
 		if err != nil {
-			return nil, err
+			return err
 		}
 		if c == nil {
 			if k == 2 { // a surface in the plane
 				continue
 			}
-			return nil, r.fail(z.place, "write Cartesian coordinates", "it has no %s", name)
+			return r.fail(z.place, "write Cartesian coordinates", "it has no %s", name)
 		}
 		v, err := r.numbers(cgnsArray{node: c, count: z.points()}, z.place)
 		if err != nil {
-			return nil, err
+			return err
 		}
-		if k == 0 {
-			if err := r.spend(24*v.Count(), z.place); err != nil {
-				return nil, err
+		if k == 0 { // not before the file is known to have so many
+			raw.Points = slices.Grow(raw.Points, count)[:first+count]
+			clear(raw.Points[first:])
+		}
+		here := raw.Points[first:]
+		for i := range v.Count() {
+			if p := z.point(i); p >= 0 {
+				*[]*float64{&here[p].X, &here[p].Y, &here[p].Z}[k] = v.Float(i)
 			}
-			points = make([]r3.Vec, v.Count())
-		}
-		for i := range points {
-			*[]*float64{&points[i].X, &points[i].Y, &points[i].Z}[k] = v.Float(i)
 		}
 	}
-	return points, nil
+	return nil
 }
 
 // numbers reads an array, which must have as many numbers as it has places; a condition's may have one for all.
@@ -267,7 +271,11 @@ func (r *cgnsReader) patch(z *cgnsZone) error {
 	if 2*int64(ni-1)*int64(nj-1) > maxTriangles {
 		return r.tooLarge(z)
 	}
-	z.room(int(ni-1)*int(nj-1), 4*int(ni-1)*int(nj-1))
+	cells := int(ni-1) * int(nj-1)
+	if err := r.spend(4*pointBytes*cells, z.place); err != nil {
+		return err
+	}
+	z.room(cells, 4*cells)
 	for j := range nj - 1 {
 		for i := range ni - 1 {
 			a := j*ni + i
