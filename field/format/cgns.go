@@ -114,7 +114,8 @@ func (r *cgnsReader) tellSteps(base *cgnsNode) error {
 	steps, err := r.ints(list[0])
 	if err == nil && steps.len() > 0 && steps.at(0) > 1 {
 		note(&r.raw, field.Doubtful, "time-steps", int(min(steps.at(0), maxTriangles)), "",
-			"the file holds several time steps; the last solution of each zone counts, and zones of other steps lie on top: export one step by itself")
+			"the file holds several time steps; the last solution of each zone counts, "+
+				"and zones of other steps lie on top: export one step by itself")
 	}
 	return err
 }
