@@ -2,6 +2,7 @@ package field
 
 import (
 	"math"
+	"slices"
 
 	"shearprint/field/r3"
 )
@@ -67,6 +68,25 @@ func (f *Field) meanOfFaces(raw *Raw, r *repair, v int32) (r3.Vec2, r3.Vec) {
 		return r3.Vec2{}, r3.Vec{}
 	}
 	return sum.Scale(1 / weights), sum3.Scale(1 / weights).Reject(f.Normals[v])
+}
+
+// Redirected returns a field on the same mesh that has other vectors at the given vertices, in the polar form of their
+// charts, and the rest, with MaxTau, as it was.
+func (f *Field) Redirected(vertices []int32, polar func(v int32) (size, angle float64)) *Field {
+	g := *f
+	g.Tau, g.Tau3 = slices.Clone(f.Tau), slices.Clone(f.Tau3)
+	g.size, g.angle = slices.Clone(f.size), slices.Clone(f.angle)
+	for _, v := range vertices {
+		g.size[v], g.angle[v] = polar(v)
+		g.Tau[v] = r3.Polar(g.size[v], g.angle[v])
+		var sum r3.Vec
+		for h := range f.Fan(v) {
+			d := f.Lift(h/3, r3.Polar(1, f.FlatAngle(h, g.angle[v])))
+			sum = sum.AddScaled(f.CornerAngle(h), d)
+		}
+		g.Tau3[v] = sum.Reject(f.Normals[v]).Unit().Scale(g.size[v])
+	}
+	return &g
 }
 
 // scalar takes point values, or the mean of face values weighted by corner angle, to the vertices. A missing value is

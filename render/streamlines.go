@@ -20,7 +20,7 @@ func Streamlines(ctx context.Context, f *field.Field, apart float64) ([][]field.
 	}
 	// A grid that the surface's size allows: at least a four-hundredth of the diagonal.
 	apart = max(apart, f.Diagonal()/400)
-	e := evenly{f: f, t: trace.New(f, nil), apart: apart, cells: map[[3]int32][]settled{}}
+	e := evenly{f: f, t: trace.New(f, nil, nil), apart: apart, cells: map[[3]int32][]settled{}}
 	// Every part and region is reached: candidates are the triangles themselves, in strides that spread them.
 	n := len(f.Tris)
 	stride := coprime(n)

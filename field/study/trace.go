@@ -55,7 +55,7 @@ func (s *Study) traceWith(sk *topology.Skeleton) *trace.Tracer {
 			}
 			stops[i] = trace.Stop{ID: i, Loc: p.Loc, Radius: float64(share * p.Size)}
 		}
-		s.tracer = trace.New(s.f, stops)
+		s.tracer = trace.New(s.f, stops, nil)
 	}
 	return s.tracer
 }

@@ -45,7 +45,7 @@ func (b *builder) addBasins(ctx context.Context) error {
 		return err
 	}
 	for i := range paths {
-		ends[i] = b.endsOf(ctx, &paths[i])
+		ends[i] = b.endsOf(&paths[i])
 		paths[i] = trace.Both{}
 	}
 	if err := ctx.Err(); err != nil {
@@ -139,9 +139,7 @@ func (b *builder) flood(t, number int32, cut []bool, piece []int32) int32 {
 }
 
 // endsOf tells the source and the sink of a streamline.
-func (b *builder) endsOf(ctx context.Context, p *trace.Both) [2]int {
-	b.goOn(ctx, &p.Back, true)
-	b.goOn(ctx, &p.Ahead, false)
+func (b *builder) endsOf(p *trace.Both) [2]int {
 	ends := [2]int{b.arrival(&p.Back), b.arrival(&p.Ahead)}
 	for i, e := range ends {
 		if e >= 0 && b.s.Points[e].Index < 0 { // a saddle takes single curves only, not a region

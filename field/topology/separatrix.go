@@ -2,7 +2,6 @@ package topology
 
 import (
 	"context"
-	"fmt"
 	"math"
 
 	"shearprint/field"
@@ -57,8 +56,7 @@ func (b *builder) addSeparatrices(ctx context.Context) error {
 		return err
 	}
 	for i := range lines {
-		detours := b.goOn(ctx, &paths[i], starts[i].backward)
-		lines[i] = b.separatrix(paths[i], starts[i], detours)
+		lines[i] = b.separatrix(paths[i], starts[i])
 	}
 	if err := ctx.Err(); err != nil {
 		return err
@@ -94,8 +92,8 @@ func (b *builder) twice(lines []Line, l *Line) bool {
 	return false
 }
 
-// separatrix makes a line of the path traced from one start, which went past so many cancelled pairs.
-func (b *builder) separatrix(path trace.Path, st start, detours int) Line {
+// separatrix makes a line of the path traced from one start.
+func (b *builder) separatrix(path trace.Path, st start) Line {
 	path.Locs = append([]field.Loc{b.s.Points[st.point].Loc}, path.Locs...)
 	other := b.arrival(&path)
 	if other >= 0 && path.End != trace.Captured || other >= 0 && b.s.Points[other].Type != Saddle {
@@ -111,9 +109,6 @@ func (b *builder) separatrix(path trace.Path, st start, detours int) Line {
 		l.Type = Horn
 	}
 	b.explain(&l, b.setKind(&l), st, b.endWords(&path))
-	if detours > 0 {
-		l.Reason += fmt.Sprintf("; on its way it passes %s below the noise floor", plural(detours, "pair"))
-	}
 	return l
 }
 

@@ -19,21 +19,23 @@ const (
 // builder makes the lines of a skeleton.
 type builder struct {
 	s       *Skeleton
-	f       *field.Field
+	f       *field.Field // mended
+	mended  *mended
 	t       *trace.Tracer
 	rates   *rates
-	owner   map[int32]int          // number of the point per triangle that shares its index; for looking up only
-	edge    float64                // mean edge length
-	winding []winding              // separatrices that end on closed orbits
-	ghosts  []Point                // the points below the noise floor; as stops they are numbered from len(s.Points) on
-	groups  []int32                // per ghost: those with the same number cancel together
-	escape  map[ghostWay][]*escape // what was found of ghosts so far; for looking up only
-	bands   int                    // closed orbits that are no cycle: one of a band of them
+	owner   map[int32]int // number of the point per triangle that shares its index; for looking up only
+	edge    float64       // mean edge length
+	winding []winding     // separatrices that end on closed orbits
+	bands   int           // closed orbits that are no cycle: one of a band of them
 }
 
 // addLines finds separatrices, cycles, open lines and basins.
 func (s *Skeleton) addLines(ctx context.Context, progress func(share float64)) error {
-	b := builder{s: s, f: s.Field, owner: map[int32]int{}, edge: s.Field.MeanEdge()}
+	m, err := s.count.mend(ctx, s.Floor)
+	if err != nil {
+		return err
+	}
+	b := builder{s: s, f: m.f, mended: m, owner: map[int32]int{}, edge: s.Field.MeanEdge()}
 	var stops []trace.Stop
 	for i := range s.Points {
 		p := &s.Points[i]
@@ -49,12 +51,8 @@ func (s *Skeleton) addLines(ctx context.Context, progress func(share float64)) e
 			b.owner[p.Loc.Tri] = i
 		}
 	}
-	ghosts, err := b.findGhosts(ctx)
-	if err != nil {
-		return err
-	}
-	b.t = trace.New(s.Field, append(stops, ghosts...))
-	if b.rates, err = findRates(ctx, s.Field); err != nil {
+	b.t = trace.New(b.f, stops, m.swings)
+	if b.rates, err = findRates(ctx, b.f); err != nil {
 		return err
 	}
 	progress(0.2)
@@ -67,6 +65,7 @@ func (s *Skeleton) addLines(ctx context.Context, progress func(share float64)) e
 	for i := range s.Lines {
 		s.Lines[i].ID = fmt.Sprint("L", i+1)
 	}
+	b.tellMended()
 	if b.bands > 0 {
 		s.tell(field.Note, "closed-bands", b.bands, "", "%s met closed streamlines beside which all others close too: they "+
 			"are no cycles, and are not listed", plural(b.bands, "curve"))
@@ -79,9 +78,6 @@ func (s *Skeleton) addLines(ctx context.Context, progress func(share float64)) e
 // came to rest. -1 for none.
 func (b *builder) arrival(p *trace.Path) int {
 	if p.End == trace.Captured {
-		if p.Stop >= len(b.s.Points) {
-			return -1 // a cancelled point
-		}
 		return p.Stop
 	}
 	if p.End != trace.Stagnant && p.End != trace.Stuck || len(p.Locs) == 0 {
@@ -110,11 +106,10 @@ func (b *builder) endWords(p *trace.Path) string {
 		return "a closed orbit, onto which it winds"
 	case trace.TooLong:
 		return "no end within the length limit"
-	case trace.Stagnant, trace.Stuck, trace.Captured:
-		if b.s.Floor > 0 {
-			return "a place of faint shear whose critical points are below the noise floor"
-		}
+	case trace.Stagnant:
 		return "a place where the wall shear stress fades"
+	case trace.Stuck:
+		return "a sharp corner of the mesh, or rough data, where the flow of neighbouring triangles meets head-on"
 	}
 	return p.End.String()
 }

@@ -79,6 +79,33 @@ type side struct {
 	h           int32
 	along, away [2]float64
 	length      float64
+	unit        bool // directions count, not sizes
+	swings      bool
+	swing       Swing
+	size        [3]float64
+	turned      float64 // what is to be added to the swing's angle to have it from the edge's direction [rad]
+	forward     bool    // the edge is measured from the tail of h
+}
+
+// at returns what the share u of the edge has of tau, or of its direction: along the edge and away from it.
+func (s *side) at(u float64) (along, away float64) {
+	if !s.swings {
+		t := r3.Vec2{X: s.along[0] + float64(u*(s.along[1]-s.along[0])), Y: s.away[0] + float64(u*(s.away[1]-s.away[0]))}
+		if s.unit {
+			t = t.Unit()
+		}
+		return t.X, t.Y
+	}
+	if !s.forward {
+		u = 1 - u
+	}
+	var b [3]float64
+	b[s.h%3], b[(s.h+1)%3] = 1-u, u
+	away, along = r3.SinCos(s.swing.at(b, s.size) + s.turned)
+	if !s.forward {
+		along = -along
+	}
+	return along, away
 }
 
 // sideOf looks at half-edge h from its own triangle; forward tells whether the edge is measured from the tail of h.
@@ -88,7 +115,11 @@ func (w *walk) sideOf(h int32, forward bool) side {
 	e := w.corner[(k+1)%3].Sub(w.corner[k])
 	d, n := e.Unit(), w.inward(k)
 	a, b := w.tau[k], w.tau[(k+1)%3]
-	s := side{h: h, along: [2]float64{a.Dot(d), b.Dot(d)}, away: [2]float64{a.Dot(n), b.Dot(n)}, length: e.Norm()}
+	s := side{h: h, along: [2]float64{a.Dot(d), b.Dot(d)}, away: [2]float64{a.Dot(n), b.Dot(n)}, length: e.Norm(),
+		swings: w.swings, swing: w.swing, size: w.size, forward: forward}
+	if w.swings {
+		s.turned = r3.Atan2(s.away[0], s.along[0]) - w.swing.Angle[k] // of the curve's direction, along tau or against it
+	}
 	if !forward {
 		s.along = [2]float64{-s.along[1], -s.along[0]}
 		s.away = [2]float64{s.away[1], s.away[0]}
@@ -100,19 +131,70 @@ func (w *walk) sideOf(h int32, forward bool) side {
 // side flows away from it or its end is reached.
 func (w *walk) slide(h int32, share float64) {
 	a, b := w.sideOf(h, true), w.sideOf(w.f.Twin[h], false)
-	at := func(v [2]float64, u float64) float64 { return v[0] + float64(u*(v[1]-v[0])) }
-	mean := [2]float64{(a.along[0] + b.along[0]) / 2, (a.along[1] + b.along[1]) / 2}
-	speed := at(mean, share)
+	a.unit = a.swings || b.swings
+	b.unit = a.unit
+	speed := meanAlong(&a, &b, share)
 	if math.Abs(speed) <= field.ZeroFraction*w.f.MaxTau {
 		w.leaveAt(h, share)
 		w.stick()
 		return
 	}
-	end, goal := 1.0, -1 // goal: 0 leaves into side a, 1 into side b, -1 at the end of the edge, 2 stuck
+	end, goal := slideEnd(&a, &b, share, speed)
+	w.s += float64(math.Abs(end-share) * a.length)
+	switch goal {
+	case intoFirst:
+		w.leaveAt(h, end)
+	case intoSecond:
+		w.leaveAt(w.f.Twin[h], 1-end)
+	case atRest:
+		w.leaveAt(h, end)
+		w.stick()
+	default:
+		w.turnCorner(h, speed > 0)
+	}
+}
+
+// Ways in which a slide along an edge ends.
+const (
+	intoFirst  = iota // it leaves into the first side
+	intoSecond        // or the second
+	atRest            // it comes to a place from which the flow goes nowhere
+	atTheEnd          // it reaches the end of the edge
+)
+
+// swingSteps is the number of places at which the edge of a triangle that swings is looked at.
+const swingSteps = 64
+
+// meanAlong returns the mean of what both sides have along the edge.
+func meanAlong(a, b *side, u float64) float64 {
+	p, _ := a.at(u)
+	q, _ := b.at(u)
+	return (p + q) / 2
+}
+
+// slideEnd finds the place at which a slide ends that begins at the given share of the edge, and how it ends.
+func slideEnd(a, b *side, share, speed float64) (end float64, goal int) {
+	end, goal = 1, atTheEnd
 	if speed < 0 {
 		end = 0
 	}
-	for i, v := range [3][2]float64{a.away, b.away, mean} {
+	if a.unit {
+		for i := 1; i <= swingSteps; i++ {
+			u := share + float64(i)*(end-share)/swingSteps
+			if _, away := a.at(u); away > 0 {
+				return u, intoFirst
+			}
+			if _, away := b.at(u); away > 0 {
+				return u, intoSecond
+			}
+			if meanAlong(a, b, u)*speed <= 0 {
+				return u, atRest
+			}
+		}
+		return end, atTheEnd
+	}
+	mean := [2]float64{meanAlong(a, b, 0), meanAlong(a, b, 1)}
+	for i, v := range [...][2]float64{intoFirst: a.away, intoSecond: b.away, atRest: mean} {
 		// The first place ahead where the value changes its sign.
 		d := v[1] - v[0]
 		if d == 0 {
@@ -123,18 +205,7 @@ func (w *walk) slide(h int32, share float64) {
 			end, goal = u, i
 		}
 	}
-	w.s += float64(math.Abs(end-share) * a.length)
-	switch goal {
-	case 0:
-		w.leaveAt(h, end)
-	case 1:
-		w.leaveAt(w.f.Twin[h], 1-end)
-	case 2:
-		w.leaveAt(h, end)
-		w.stick()
-	default:
-		w.turnCorner(h, speed > 0)
-	}
+	return end, goal
 }
 
 // leaveAt puts the curve on half-edge h where a slide along it ends.

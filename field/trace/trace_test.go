@@ -46,7 +46,7 @@ func at(f *field.Field, x, y float64) field.Loc {
 func TestSpiralOfLinearField(t *testing.T) {
 	k := exact.Rotors[0]
 	f := flat(t, exact.Disk(1, 4000), func(x, y float64) (float64, float64) { return k.F*x - k.G*y, k.G*x + k.F*y })
-	p := trace.New(f, nil).Trace(context.Background(), at(f, 0.02, 0.01), trace.Options{Tolerance: 1e-9})
+	p := trace.New(f, nil, nil).Trace(context.Background(), at(f, 0.02, 0.01), trace.Options{Tolerance: 1e-9})
 	if p.End != trace.Rim {
 		t.Fatalf("ends because %v", p.End)
 	}
@@ -78,7 +78,7 @@ func TestOrderOfConvergence(t *testing.T) {
 			s := 1 + x*x + 0.5*y
 			return -s * y, s * x
 		})
-		p := trace.New(f, nil).Trace(context.Background(), at(f, 0.6, 0), trace.Options{MaxLength: 1.2 * math.Pi})
+		p := trace.New(f, nil, nil).Trace(context.Background(), at(f, 0.6, 0), trace.Options{MaxLength: 1.2 * math.Pi})
 		worst := 0.0
 		for _, l := range p.Locs {
 			worst = math.Max(worst, math.Abs(f.Position(l).Norm()-0.6))
@@ -97,7 +97,7 @@ func TestMeridianOfStokesSphere(t *testing.T) {
 	f := caseNamed(t, "stokes-sphere").Field(20000)
 	rear, _ := f.Nearest(r3.Vec{X: 1})
 	front, _ := f.Nearest(r3.Vec{X: -1})
-	tr := trace.New(f, []trace.Stop{{ID: 4, Loc: rear, Radius: 0.02}, {ID: 7, Loc: front, Radius: 0.02}})
+	tr := trace.New(f, []trace.Stop{{ID: 4, Loc: rear, Radius: 0.02}, {ID: 7, Loc: front, Radius: 0.02}}, nil)
 	from, _ := f.Nearest(r3.Vec{X: -0.3, Y: 0.8, Z: 0.5})
 	b := tr.Through(context.Background(), from, trace.Options{})
 	if b.Ahead.End != trace.Captured || b.Ahead.Stop != 4 || b.Back.End != trace.Captured || b.Back.Stop != 7 {
@@ -123,7 +123,7 @@ func TestMeridianOfStokesSphere(t *testing.T) {
 func TestClosedOrbits(t *testing.T) {
 	sphere := caseNamed(t, "swirl-and-strain").Field(20000)
 	from, _ := sphere.Nearest(r3.Vec{X: 0.7, Z: 0.6})
-	p := trace.New(sphere, nil).Trace(context.Background(), from, trace.Options{Backward: true})
+	p := trace.New(sphere, nil, nil).Trace(context.Background(), from, trace.Options{Backward: true})
 	if p.End != trace.Cycle {
 		t.Fatalf("sphere: ends because %v after %g", p.End, p.Length())
 	}
@@ -131,7 +131,7 @@ func TestClosedOrbits(t *testing.T) {
 		t.Errorf("sphere: length of the orbit %g, want 2 pi", got)
 	}
 	hopf := caseNamed(t, "hopf-cycle").Field(20000)
-	p = trace.New(hopf, nil).Trace(context.Background(), at(hopf, 0.1, 0), trace.Options{})
+	p = trace.New(hopf, nil, nil).Trace(context.Background(), at(hopf, 0.1, 0), trace.Options{})
 	if p.End != trace.Cycle {
 		t.Fatalf("Hopf: ends because %v after %g", p.End, p.Length())
 	}
@@ -158,7 +158,7 @@ func TestFollowsRidge(t *testing.T) {
 		t.Fatal(err)
 	}
 	from, _ := f.Nearest(r3.Vec{X: -1.5, Y: 0.4, Z: -0.4})
-	p := trace.New(f, nil).Trace(context.Background(), from, trace.Options{})
+	p := trace.New(f, nil, nil).Trace(context.Background(), from, trace.Options{})
 	last := f.Position(p.Locs[len(p.Locs)-1])
 	if p.End != trace.Rim || math.Abs(last.Y) > 0.02 || last.X < 1.99 {
 		t.Errorf("ends at %v because %v", last, p.End)
@@ -168,26 +168,26 @@ func TestFollowsRidge(t *testing.T) {
 func TestStagnationAndRim(t *testing.T) {
 	// tau = (-x, -y): straight into the origin, where it vanishes.
 	f := flat(t, exact.Disk(1, 600), func(x, y float64) (float64, float64) { return -(x - 0.013), -(y + 0.007) })
-	p := trace.New(f, nil).Trace(context.Background(), at(f, 0.5, 0.3), trace.Options{})
+	p := trace.New(f, nil, nil).Trace(context.Background(), at(f, 0.5, 0.3), trace.Options{})
 	q := f.Position(p.Locs[len(p.Locs)-1])
 	if p.End != trace.Stagnant || q.Sub(r3.Vec{X: 0.013, Y: -0.007}).Norm() > 1e-4 {
 		t.Errorf("ends at %v because %v", q, p.End)
 	}
-	p = trace.New(f, nil).Trace(context.Background(), at(f, 0.5, 0.3), trace.Options{Backward: true})
+	p = trace.New(f, nil, nil).Trace(context.Background(), at(f, 0.5, 0.3), trace.Options{Backward: true})
 	if r := f.Position(p.Locs[len(p.Locs)-1]).Norm(); p.End != trace.Rim || r < 0.98 {
 		t.Errorf("backward ends at radius %g because %v", r, p.End)
 	}
-	p = trace.New(f, nil).Trace(context.Background(), at(f, 0.5, 0.3), trace.Options{MaxLength: 0.1})
+	p = trace.New(f, nil, nil).Trace(context.Background(), at(f, 0.5, 0.3), trace.Options{MaxLength: 0.1})
 	if p.End != trace.TooLong || p.Length() > 0.2 {
 		t.Errorf("length limit: %v after %g", p.End, p.Length())
 	}
 	zero := flat(t, exact.Disk(1, 100), func(x, y float64) (float64, float64) { return 0, 0 })
-	if p := trace.New(zero, nil).Trace(context.Background(), at(zero, 0.5, 0.3), trace.Options{}); p.End != trace.Stagnant {
+	if p := trace.New(zero, nil, nil).Trace(context.Background(), at(zero, 0.5, 0.3), trace.Options{}); p.End != trace.Stagnant {
 		t.Errorf("zero field: %v", p.End)
 	}
 	ctx, cancel := context.WithCancel(context.Background())
 	cancel()
-	if p := trace.New(f, nil).Trace(ctx, at(f, 0.5, 0.3), trace.Options{}); p.End != trace.Halted {
+	if p := trace.New(f, nil, nil).Trace(ctx, at(f, 0.5, 0.3), trace.Options{}); p.End != trace.Halted {
 		t.Errorf("cancelled: %v", p.End)
 	}
 }
@@ -214,7 +214,7 @@ func TestAnyCurveEnds(t *testing.T) {
 			t.Fatal(err)
 		}
 		from, _ := f.Nearest(seedVec())
-		p := trace.New(f, nil).Trace(context.Background(), from, trace.Options{Backward: rapid.Bool().Draw(t, "back")})
+		p := trace.New(f, nil, nil).Trace(context.Background(), from, trace.Options{Backward: rapid.Bool().Draw(t, "back")})
 		if p.End == trace.Halted || len(p.Locs) != len(p.S) || len(p.Locs) == 0 {
 			t.Fatalf("end %v, %d places, %d lengths", p.End, len(p.Locs), len(p.S))
 		}
@@ -234,7 +234,7 @@ func TestAnyCurveEnds(t *testing.T) {
 
 func BenchmarkTrace(b *testing.B) {
 	f := caseNamed(b, "stream-and-strain").Field(1_000_000)
-	tr := trace.New(f, nil)
+	tr := trace.New(f, nil, nil)
 	from, _ := f.Nearest(r3.Vec{X: -0.3, Y: 0.8, Z: 0.5})
 	for b.Loop() {
 		tr.Trace(context.Background(), from, trace.Options{})

@@ -21,16 +21,18 @@ type Tracer struct {
 	stops   []Stop
 	at      []r3.Vec          // position of each stop
 	around  map[int32][]int32 // numbers of the stops that a curve may meet in a triangle
-	maximal float64           // default length limit
+	swings  map[int32]Swing
+	maximal float64 // default length limit
 }
 
 // lengthLimit is the default length limit, as a multiple of the diagonal of the box around the surface: a streamline
 // that crosses a body takes one or two, one that winds around it on its way down a few more.
 const lengthLimit = 20
 
-// New returns a tracer. Stops may be nil.
-func New(f *field.Field, stops []Stop) *Tracer {
-	t := &Tracer{f: f, stops: stops, around: map[int32][]int32{}, maximal: lengthLimit * f.Diagonal()}
+// New returns a tracer. Stops may be nil, and so may swings: the triangles, by number, in which interpolated vectors do not
+// tell how tau turns.
+func New(f *field.Field, stops []Stop, swings map[int32]Swing) *Tracer {
+	t := &Tracer{f: f, stops: stops, swings: swings, around: map[int32][]int32{}, maximal: lengthLimit * f.Diagonal()}
 	for i, s := range stops {
 		t.at = append(t.at, f.Position(s.Loc))
 		t.register(int32(i), s)
@@ -75,7 +77,7 @@ const defaultTolerance = 1e-6
 
 // Trace follows tau from a place until the curve ends.
 func (t *Tracer) Trace(ctx context.Context, from field.Loc, opt Options) Path {
-	w := walk{t: t, f: t.f, sign: 1, limit: opt.MaxLength, tolerance: opt.Tolerance, last: map[int32]visit{}}
+	w := walk{t: t, f: t.f, cell: cell{sign: 1}, limit: opt.MaxLength, tolerance: opt.Tolerance, last: map[int32]visit{}}
 	w.path = Path{Stop: -1, Loop: -1}
 	if opt.Backward {
 		w.sign = -1
@@ -106,6 +108,10 @@ type cell struct {
 	twice  float64 // twice the area
 	long   float64 // longest edge
 	still  float64 // |tau| below which the flow has come to rest
+	swings bool    // the direction is that of swing, and tau holds for the corners only
+	swing  Swing
+	size   [3]float64 // |tau| at the corners, of a cell that swings
+	sign   float64    // +1 along tau, -1 against it
 }
 
 // restShare is the share of a triangle's largest |tau| below which a curve has arrived at the triangle's zero: it is then
@@ -128,6 +134,12 @@ func (w *walk) enter(tri int32) {
 		c.long = math.Max(c.long, c.corner[(k+1)%3].Sub(c.corner[k]).Norm())
 	}
 	c.still = math.Max(c.still, field.ZeroFraction*w.f.MaxTau)
+	if c.swing, c.swings = w.t.swings[tri]; c.swings {
+		c.still = 0 // it has a direction everywhere
+		for k := range c.size {
+			c.size[k] = c.tau[k].Norm()
+		}
+	}
 }
 
 // bary returns the barycentric weights of a point of the frame; a negative one lies beyond the opposite edge.
@@ -145,9 +157,12 @@ func (c *cell) point(b [3]float64) r3.Vec2 {
 	return c.corner[0].Scale(b[0]).AddScaled(b[1], c.corner[1]).AddScaled(b[2], c.corner[2])
 }
 
-// flow returns tau at p, also beyond the edges, where the linear field goes on.
+// flow returns tau at p, also beyond the edges, where the linear field goes on; in a cell that swings, its direction.
 func (c *cell) flow(p r3.Vec2) r3.Vec2 {
 	b := c.bary(p)
+	if c.swings {
+		return r3.Polar(c.sign, c.swing.at(b, c.size))
+	}
 	return c.tau[0].Scale(b[0]).AddScaled(b[1], c.tau[1]).AddScaled(b[2], c.tau[2])
 }
 

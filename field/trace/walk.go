@@ -12,7 +12,6 @@ import (
 type walk struct {
 	t         *Tracer
 	f         *field.Field
-	sign      float64 // +1 along tau, -1 against it
 	limit     float64
 	tolerance float64
 
@@ -130,6 +129,10 @@ func (w *walk) inSpace(p r3.Vec2) r3.Vec { return w.f.Corner(w.tri).At(w.bary(p)
 func (w *walk) flowThrough() int32 {
 	k1, ok := w.unit(w.p)
 	entered := w.steps
+	allowed := w.tolerance * w.long
+	if w.swings {
+		allowed = math.Max(allowed, float64(swingTolerance*w.long))
+	}
 	for ok {
 		h := w.step * w.long
 		next, k4, err, fine := w.rungeKutta(h, k1)
@@ -140,8 +143,8 @@ func (w *walk) flowThrough() int32 {
 			}
 			continue
 		}
-		if err > w.tolerance*w.long {
-			w.step *= math.Max(0.2, 0.9*cubeRoot(w.tolerance*w.long/err))
+		if err > allowed {
+			w.step *= math.Max(0.2, 0.9*cubeRoot(allowed/err))
 			if w.step < minStep {
 				break
 			}
@@ -160,7 +163,7 @@ func (w *walk) flowThrough() int32 {
 		if edge < 0 {
 			grow := 5.0
 			if err > 0 {
-				grow = math.Min(grow, 0.9*cubeRoot(w.tolerance*w.long/err))
+				grow = math.Min(grow, 0.9*cubeRoot(allowed/err))
 			}
 			w.step = math.Min(1, w.step*math.Max(1, grow))
 		}
@@ -177,7 +180,7 @@ func (w *walk) flowThrough() int32 {
 			w.finish(Stuck)
 			return -1
 		}
-		if k1.Dot(k4) <= 0 { // an accurate step that turns back has gone over a zero
+		if !w.swings && k1.Dot(k4) <= 0 { // an accurate step that turns back has gone over a zero
 			break
 		}
 		k1 = k4
@@ -188,6 +191,10 @@ func (w *walk) flowThrough() int32 {
 	w.finish(Stagnant)
 	return -1
 }
+
+// swingTolerance is the error allowed to a step in a triangle that swings, as a share of its longest edge: the direction in it
+// is made up, and may turn round within a tiny distance, at which accurate steps would be as tiny.
+const swingTolerance = 1e-3
 
 // minStep is the step, as a share of the longest edge, at which the curve has arrived at a zero of tau.
 const minStep = 1e-9
