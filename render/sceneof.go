@@ -18,7 +18,7 @@ func SceneOf(f *field.Field, sk *topology.Skeleton) *Scene {
 		s.Marks = append(s.Marks, MarkOf(&sk.Points[i]))
 	}
 	for i := range sk.Lines {
-		s.Lines = append(s.Lines, LineOf(&sk.Lines[i]))
+		s.Lines = append(s.Lines, LinesOf(&sk.Lines[i])...)
 	}
 	return s
 }
@@ -39,10 +39,19 @@ func MarkOf(p *topology.Point) Mark {
 	return m
 }
 
-// LineOf returns the curve of a separatrix or of a separation or attachment line.
-func LineOf(l *topology.Line) Line {
-	sense := [...]Sense{
+// LinesOf returns the curve of a separatrix or of a separation or attachment line: one, as a rule; a separatrix without a
+// kind on the whole is cut into its reaches.
+func LinesOf(l *topology.Line) []Line {
+	senses := [...]Sense{
 		topology.NoKind: NeutralSense, topology.AttachmentLine: AttachmentSense, topology.SeparationLine: SeparationSense,
-	}[min(l.Kind, topology.SeparationLine)]
-	return Line{Locs: l.Locs, Sense: sense, Open: l.Type == topology.Open}
+	}
+	open := l.Type == topology.Open
+	if l.Kind != topology.NoKind || len(l.Reaches) < 2 {
+		return []Line{{Locs: l.Locs, Sense: senses[min(l.Kind, topology.SeparationLine)], Open: open}}
+	}
+	var out []Line
+	for _, r := range l.Reaches {
+		out = append(out, Line{Locs: l.Locs[r.First : r.Last+1], Sense: senses[min(r.Kind, topology.SeparationLine)], Open: open})
+	}
+	return out
 }

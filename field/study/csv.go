@@ -5,6 +5,8 @@ import (
 	"fmt"
 	"io"
 	"strconv"
+
+	"shearprint/field/topology"
 )
 
 // cell prints a number for a table file, with the digits of the JSON; nothing where it is infinite or unknown.
@@ -99,14 +101,15 @@ func (t *Topology) csvPoints(c *tableWriter) {
 }
 
 func (t *Topology) csvLines(c *tableWriter) {
-	c.row("id", "kind", "type", "from", "to", "length"+bracket(t.Run.LengthUnit), "strength", "stable", "reason")
+	c.row("id", "kind", "type", "from", "to", "length"+bracket(t.Run.LengthUnit), "strength", "stable",
+		"separates"+bracket(t.Run.LengthUnit), "attaches"+bracket(t.Run.LengthUnit), "reason")
 	for _, l := range t.Lines {
 		stable := ""
 		if l.Stable != nil {
 			stable = strconv.FormatBool(*l.Stable)
 		}
 		c.row(l.ID, l.Kind.String(), l.Type.String(), string(l.From), string(l.To), cell(l.Length), cell(l.Strength), stable,
-			l.Reason)
+			l.spans(topology.SeparationLine), l.spans(topology.AttachmentLine), l.Reason)
 	}
 }
 

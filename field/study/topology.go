@@ -55,10 +55,20 @@ type Line struct {
 	Length   Number            `json:"length"`
 	Strength Number            `json:"strength"`
 	Reason   string            `json:"reason"`
+	// Reaches are the parts of the line that have one kind each, from its beginning to its end.
+	Reaches []Reach `json:"reaches"`
 	// Angle is the angle between separation surface and wall at each point [degrees]; null where it is not known.
 	Angle  []Number `json:"angle"`
 	Stable *bool    `json:"stable"` // of a cycle, whether its neighbours approach it; null for other lines
 	Points []Vec    `json:"points"`
+}
+
+// Reach is a part of a line.
+type Reach struct {
+	Kind     topology.Kind `json:"kind"`
+	Begin    Number        `json:"begin"` // arc length along the line
+	End      Number        `json:"end"`
+	Strength Number        `json:"strength"`
 }
 
 // Basin is a region of the surface whose streamlines come from one point and go to one.
@@ -167,13 +177,21 @@ func (s *Study) lineOf(sk *topology.Skeleton, l *topology.Line) Line {
 	out := Line{
 		ID: l.ID, Kind: l.Kind, Type: l.Type, From: idOf(sk, l.From), To: idOf(sk, l.To),
 		Length: Number(l.Length), Strength: Number(l.Strength), Reason: l.Reason,
-		Points: make([]Vec, len(l.Locs)),
+		Points: make([]Vec, len(l.Locs)), Reaches: []Reach{},
 	}
 	if l.Type == topology.Cycle {
 		out.Stable = &l.Stable
 	}
+	at := make([]float64, len(l.Locs)) // arc length
 	for i, loc := range l.Locs {
-		out.Points[i] = vecOf(s.f.Position(loc))
+		p := s.f.Position(loc)
+		out.Points[i] = vecOf(p)
+		if i > 0 {
+			at[i] = at[i-1] + p.Sub(s.f.Position(l.Locs[i-1])).Norm()
+		}
+	}
+	for _, r := range l.Reaches {
+		out.Reaches = append(out.Reaches, Reach{r.Kind, Number(at[r.First]), Number(at[r.Last]), Number(r.Strength)})
 	}
 	if l.Angle != nil {
 		out.Angle = make([]Number, len(l.Angle))

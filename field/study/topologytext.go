@@ -174,15 +174,15 @@ func (t *Topology) writeLines(s *sheet, kind topology.Kind, title string) {
 
 // writeOthers lists the lines that neither separate nor attach clearly.
 func (t *Topology) writeOthers(s *sheet) {
-	rows := [][]string{{"id", "type", "from", "to", "length" + bracket(t.Run.LengthUnit)}}
+	rows := [][]string{{"id", "type", "from", "to", "length" + bracket(t.Run.LengthUnit), "separates", "attaches"}}
 	for _, l := range t.Lines {
 		if l.Kind == topology.NoKind {
 			rows = append(rows, []string{l.ID, l.Type.String(), cmp.Or(string(l.From), "none"), cmp.Or(string(l.To), "none"),
-				num(l.Length)})
+				num(l.Length), l.spans(topology.SeparationLine), l.spans(topology.AttachmentLine)})
 		}
 	}
 	if len(rows) > 1 {
-		s.heading("Other lines of the skeleton: beside them streamlines neither close in nor part clearly")
+		s.heading("Other lines of the skeleton: neither separating nor attaching on the whole")
 		s.table(rows)
 	}
 }
@@ -195,11 +195,42 @@ func (l *Line) describe(run Run) string {
 	} else if n > 0 {
 		words += ", through " + place(l.Points[0])
 	}
+	if on, off := l.spans(l.Kind), l.spans(opposite[l.Kind]); on != "" && (off != "" || len(l.Reaches) > 3) {
+		words += fmt.Sprintf("; it %s from %s", verbs[l.Kind], on)
+		if off != "" {
+			words += fmt.Sprintf(", but %s from %s", verbs[opposite[l.Kind]], off)
+		}
+		words += " along its length"
+	}
 	if angles := l.knownAngles(); len(angles) > 0 {
 		words += fmt.Sprintf("; the surface that leaves the wall stands at %.0f degrees to it (median; from %.0f to %.0f)",
 			angles[len(angles)/2], angles[0], angles[len(angles)-1])
 	}
 	return words + "."
+}
+
+// opposite holds the kind of lines that do the contrary.
+var opposite = map[topology.Kind]topology.Kind{
+	topology.SeparationLine: topology.AttachmentLine, topology.AttachmentLine: topology.SeparationLine,
+}
+
+var verbs = map[topology.Kind]string{topology.SeparationLine: "separates", topology.AttachmentLine: "attaches"}
+
+// mostSpans bounds the reaches that are listed in words.
+const mostSpans = 3
+
+// spans lists where along the line it has the kind; "" for nowhere.
+func (l *Line) spans(kind topology.Kind) string {
+	var list []string
+	for _, r := range l.Reaches {
+		if r.Kind == kind && kind != topology.NoKind {
+			list = append(list, fmt.Sprintf("%.3g to %.3g", float64(r.Begin), float64(r.End)))
+		}
+	}
+	if n := len(list) - mostSpans; n > 0 {
+		list = append(list[:mostSpans], fmt.Sprintf("%d more", n))
+	}
+	return strings.Join(list, ", ")
 }
 
 // knownAngles returns the angles of the separation surface in ascending order [degrees].

@@ -49,6 +49,13 @@ func checkLines(t rapid.TB, s *topology.Skeleton) {
 		if l.Type == topology.Cycle && (l.From >= 0 || l.To >= 0) || l.Angle != nil && len(l.Angle) != len(l.Locs) {
 			t.Fatalf("%s: %v from %d to %d with %d angles", l.ID, l.Type, l.From, l.To, len(l.Angle))
 		}
+		for k, r := range l.Reaches {
+			if k == 0 && r.First != 0 || k > 0 && (r.First != l.Reaches[k-1].Last || r.Kind == l.Reaches[k-1].Kind) ||
+				k == len(l.Reaches)-1 && r.Last != len(l.Locs)-1 || r.Last <= r.First || !(r.Strength >= 0) ||
+				(r.Kind != topology.NoKind) != (r.Strength >= 1) {
+				t.Fatalf("%s: reach %d of %d places is %+v", l.ID, k, len(l.Locs), l.Reaches)
+			}
+		}
 		for _, a := range l.Angle {
 			if !(a >= 0 && a <= math.Pi) {
 				t.Fatalf("%s: angle %g", l.ID, a)

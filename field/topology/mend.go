@@ -89,7 +89,7 @@ func (c *count) mend(ctx context.Context, floor float64) (*mended, error) {
 		}
 		m.gather(group)
 		m.out.regions++
-		if !m.mendRegion() {
+		if !m.mendRegion(ctx) {
 			if m.out.left == 0 {
 				m.out.leftNear = place(c.f.Corner(s.tris[0])[0])
 			}
@@ -170,7 +170,7 @@ func (m *mender) endRegion() {
 }
 
 // mendRegion takes the points out of the region at work; false, with nothing changed, where it cannot.
-func (m *mender) mendRegion() bool {
+func (m *mender) mendRegion(ctx context.Context) bool {
 	flipped, ok := m.flips()
 	if !ok {
 		return false
@@ -192,7 +192,7 @@ func (m *mender) mendRegion() bool {
 		return false
 	}
 	m.changed = append(m.changed, flipped...)
-	m.even()
+	m.even(ctx)
 	m.findSwings()
 	return true
 }
@@ -301,7 +301,7 @@ func (m *mender) lifted(h int32) float64 {
 
 // even turns tau at the vertices inside the region, as far as |tau| is below its level there, so that the squares of all turns
 // add up to the least. The vertices get the region's level as |tau|.
-func (m *mender) even() {
+func (m *mender) even(ctx context.Context) {
 	f := m.f
 	e := &m.equations
 	least := math.Inf(1)
@@ -328,7 +328,7 @@ func (m *mender) even() {
 		}
 		e.endRow()
 	}
-	e.solve()
+	e.solve(ctx)
 	level := float64(m.level * m.scale)
 	if level < float64(leastMended*m.scale) { // a patch of zeros: any size does
 		level = math.Min(least, m.scale)
@@ -484,7 +484,7 @@ func (b *builder) tellMended() {
 			}
 		}
 	}
-	b.s.tell(field.Note, "mended-regions", m.regions, where, "below the noise floor tau was interpolated from around %s of "+
+	b.s.tell(field.Doubtful, "mended-regions", m.regions, where, "below the noise floor tau was interpolated from around %s of "+
 		"cancelled points, %.2g %% of the surface, so that lines go on across", plural(m.regions, "region"), 100*area/all)
 	if m.left > 0 {
 		b.s.tell(field.Doubtful, "regions-not-mended", m.left, m.leftNear, "%s of cancelled points could not be interpolated: "+

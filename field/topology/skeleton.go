@@ -64,6 +64,7 @@ func (s *Skeleton) addLines(ctx context.Context, progress func(share float64)) e
 	s.addAngles(b.rates)
 	for i := range s.Lines {
 		s.Lines[i].ID = fmt.Sprint("L", i+1)
+		s.Lines[i].Reaches = b.reaches(&s.Lines[i])
 	}
 	b.tellMended()
 	if b.bands > 0 {

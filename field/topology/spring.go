@@ -1,6 +1,9 @@
 package topology
 
-import "math"
+import (
+	"context"
+	"math"
+)
 
 // spring is the system of equations of angles at vertices that are held together by springs along edges: the angle x of each
 // makes the sum over its edges of (x - x of the neighbour - turn) zero. Neighbours outside stay where they are.
@@ -14,9 +17,10 @@ type spring struct {
 }
 
 const (
-	// mostRelaxations bounds the steps of the solution. Any angles will do, these are the most even ones: after so many
-	// steps a region of a million vertices is even on the scale of hundreds of edges.
+	// mostRelaxations and mostWork bound the steps of the solution, and steps times vertices. Any angles will do, the
+	// solution are the most even ones: after so many steps a region is even on the scale of as many edges.
 	mostRelaxations = 400
+	mostWork        = 1e8
 	// relaxed is the sum of squares per vertex [rad2] that may be left of the equations.
 	relaxed = 1e-12
 )
@@ -42,8 +46,9 @@ func (s *spring) add(to int32, turn float64) {
 
 func (s *spring) endRow() { s.start = append(s.start, int32(len(s.neighbour))) }
 
-// solve finds x by conjugate gradients, with the diagonal as preconditioner. (Hestenes and Stiefel 1952.)
-func (s *spring) solve() {
+// solve finds x by conjugate gradients, with the diagonal as preconditioner (Hestenes and Stiefel 1952). It returns early, with
+// angles less even, once ctx is done.
+func (s *spring) solve(ctx context.Context) {
 	n := len(s.rhs)
 	buffer := make([]float64, 4*n)
 	x, r, d, q := buffer[:n:n], buffer[n:2*n:2*n], buffer[2*n:3*n:3*n], buffer[3*n:]
@@ -54,8 +59,8 @@ func (s *spring) solve() {
 		d[i] = r[i] / s.diagonal[i]
 		rho += float64(r[i] * d[i])
 	}
-	for range mostRelaxations {
-		if !(rho > relaxed*float64(n)) {
+	for range min(mostRelaxations, mostWork/max(n, 1)) {
+		if !(rho > relaxed*float64(n)) || ctx.Err() != nil {
 			return
 		}
 		curvature := 0.0

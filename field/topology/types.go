@@ -210,6 +210,7 @@ type Line struct {
 	Length   float64
 	Strength float64 // natural logarithm of the factor by which neighbouring streamlines close in on the line, or part from it
 	Reason   string  // of type and kind, in words
+	Reaches  []Reach // the line in parts of one kind, from its beginning to its end; Kind is what rules on the whole
 	// Angle is the angle between separation surface and wall at each of Locs [rad]; nil where pressure is unknown or the
 	// line is no separation line.
 	Angle []float64

@@ -68,7 +68,7 @@ func (v *View) addLines(s *render.Scene, sk *topology.Skeleton) {
 	for i := range sk.Lines {
 		l := &sk.Lines[i]
 		if kinds[l.Kind] && types[l.Type] {
-			s.Lines = append(s.Lines, render.LineOf(l))
+			s.Lines = append(s.Lines, render.LinesOf(l)...)
 		}
 	}
 }
