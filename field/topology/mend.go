@@ -45,7 +45,6 @@ type mender struct {
 	lift        []int   // per half-edge of the region, whole turns to add to its turn
 	level       float64 // of the region at work, as a share of scale
 	scale       float64
-	newSwings   []int32
 	equations   spring
 	passageways []keyed
 }

@@ -13,7 +13,8 @@ import (
 type start struct {
 	point    int // number of the saddle
 	loc      field.Loc
-	backward bool // the separatrix runs into the saddle
+	backward bool        // the separatrix runs into the saddle
+	path     *trace.Path // the separatrix itself, where it is known without tracing
 }
 
 const (
@@ -33,10 +34,13 @@ const mostSeparatrices = 8000
 // against it.
 func (b *builder) addSeparatrices(ctx context.Context) error {
 	var starts []start
+	halves := b.findHalves()
 	for i := range b.s.Points {
 		p := &b.s.Points[i]
 		switch {
-		case p.Type == Saddle && !p.Half:
+		case p.Type == Saddle && p.Half:
+			starts = append(starts, b.atHalfSaddle(i, halves)...)
+		case p.Type == Saddle:
 			starts = append(starts, b.byEigenvectors(p, i)...)
 		case p.Index < 0:
 			starts = append(starts, b.bySectors(p, i)...)
@@ -50,6 +54,10 @@ func (b *builder) addSeparatrices(ctx context.Context) error {
 	lines, paths := make([]Line, len(starts)), make([]trace.Path, len(starts))
 	if err := inBlocks(ctx, len(starts), 1, func(from, to int) {
 		for i := from; i < to; i++ {
+			if starts[i].path != nil {
+				paths[i] = *starts[i].path
+				continue
+			}
 			paths[i] = b.t.Trace(ctx, starts[i].loc, trace.Options{Backward: starts[i].backward})
 		}
 	}); err != nil {
@@ -96,7 +104,7 @@ func (b *builder) twice(lines []Line, l *Line) bool {
 func (b *builder) separatrix(path trace.Path, st start) Line {
 	path.Locs = append([]field.Loc{b.s.Points[st.point].Loc}, path.Locs...)
 	other := b.arrival(&path)
-	if other >= 0 && path.End != trace.Captured || other >= 0 && b.s.Points[other].Type != Saddle {
+	if other >= 0 && (path.End != trace.Captured || b.s.Points[other].Type != Saddle || st.path != nil) {
 		path.Locs = append(path.Locs, b.s.Points[other].Loc)
 	}
 	l := Line{From: st.point, To: other, Locs: ahead(&path, st.backward)}
@@ -123,7 +131,7 @@ func (b *builder) byEigenvectors(p *Point, i int) []start {
 		for _, sign := range [2]float64{1, -1} {
 			d := p.Frame[0].Scale(sign*v.X).AddScaled(sign*v.Y, p.Frame[1])
 			loc, _ := straight(b.f.Mesh, p.Loc, d, float64(startShare*p.Size))
-			out = append(out, start{i, loc, k == 1})
+			out = append(out, start{point: i, loc: loc, backward: k == 1})
 		}
 	}
 	return out
@@ -169,7 +177,7 @@ func (b *builder) bySectors(p *Point, i int) []start {
 				if math.Abs(before.around) < math.Abs(s.around) {
 					nearest = before
 				}
-				out = append(out, start{i, nearest.loc, !outward})
+				out = append(out, start{point: i, loc: nearest.loc, backward: !outward})
 			}
 		}
 		before = s
