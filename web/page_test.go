@@ -192,6 +192,7 @@ func TestCallsAreTheCommands(t *testing.T) {
 	for _, c := range []struct{ name, args string }{
 		{"inspect", `{}`}, {"topology", `{}`}, {"topology", `{"min_robustness": "1%"}`},
 		{"probe", `{"at": [-0.5, 0, 0.4]}`}, {"trace", `{"at": [-0.5, 0.1, 0.4]}`},
+		{"loop", `{"box": [[-1, -1, 0.05], [1, 1, 1]]}`},
 		{"loop", `{"through": [[0, -1, 0], [1, 0, 0], [0, 1, 0], [-1, 0, 0]]}`},
 		{"ledger", `{"body": "isolated", "nodes": 2, "saddles": 0}`},
 	} {

@@ -27,6 +27,7 @@ var golden = []struct{ name, args string }{
 	{"topology-radome", "topology ../../testdata/runs/radome.ply"},
 	{"topology-pod", "topology ../../testdata/runs/pod.ply"},
 	{"probe-pod", "probe ../../testdata/runs/pod.ply --at 0,0,0.3"},
+	{"region-radome", "loop ../../testdata/runs/radome.ply --box -1,-1,0.05:1,1,1"},
 	{"loop-radome", "loop ../../testdata/runs/radome.ply --through 1.2,-0.4,0;1.2,0.6,0;0.8,0.6,0;0.8,-0.4,0"},
 	{"error-missing", "topology missing.ply"},
 	{"error-far", "probe ../../testdata/runs/pod.ply --at 9,9,9"},

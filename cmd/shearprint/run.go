@@ -51,6 +51,7 @@ func (a *app) status(err error) int {
 	var usage usageError
 	var place *study.PlaceError
 	var loop *study.LoopError
+	var region *study.RegionError
 	switch {
 	case err == nil:
 		a.flushFindings()
@@ -61,7 +62,7 @@ func (a *app) status(err error) int {
 	case errors.Is(err, context.Canceled):
 		a.say("stopped")
 		return interrupted
-	case errors.As(err, &usage), errors.As(err, &place), errors.As(err, &loop):
+	case errors.As(err, &usage), errors.As(err, &place), errors.As(err, &loop), errors.As(err, &region):
 		a.say("%v", err)
 		return badUsage
 	}

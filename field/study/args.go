@@ -4,6 +4,7 @@ import (
 	"encoding/json"
 	"fmt"
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -54,6 +55,69 @@ func ParseRobustness(s string) (value float64, relative bool, err error) {
 		value /= 100
 	}
 	return value, relative, nil
+}
+
+// ParseParts reads the numbers of parts: "0,2".
+func ParseParts(s string) ([]int32, error) {
+	var out []int32
+	for _, word := range strings.Split(s, ",") {
+		p, err := strconv.ParseInt(strings.TrimSpace(word), 10, 32)
+		if err != nil {
+			return nil, fmt.Errorf("%q: %q is no number of a part; give numbers with commas, as 0,2", s, word)
+		}
+		out = append(out, int32(p))
+	}
+	slices.Sort(out)
+	return slices.Compact(out), nil
+}
+
+// ParseBox reads two opposite corners of a box: "x,y,z:x,y,z".
+func ParseBox(s string) ([2]r3.Vec, error) {
+	from, to, ok := strings.Cut(s, ":")
+	if !ok {
+		return [2]r3.Vec{}, fmt.Errorf("%q: a box is two corners with a colon, as -1,-1,0:1,1,2", s)
+	}
+	a, err := ParsePoint(from)
+	if err != nil {
+		return [2]r3.Vec{}, err
+	}
+	b, err := ParsePoint(to)
+	return [2]r3.Vec{a, b}, err
+}
+
+// parts are numbers of parts in the arguments of a call: [0, 2] or "0,2".
+type parts []int32
+
+// UnmarshalJSON implements json.Unmarshaler.
+func (p *parts) UnmarshalJSON(b []byte) error {
+	words, err := listOrWords(b)
+	if err != nil {
+		return fmt.Errorf("%s: parts are [0, 2] or \"0,2\"", b)
+	}
+	*p, err = ParseParts(words)
+	return err
+}
+
+// box is a box in the arguments of a call: [[x, y, z], [x, y, z]] or "x,y,z:x,y,z".
+type box [2]r3.Vec
+
+// UnmarshalJSON implements json.Unmarshaler.
+func (x *box) UnmarshalJSON(b []byte) error {
+	var words string
+	if json.Unmarshal(b, &words) == nil {
+		corners, err := ParseBox(words)
+		*x = box(corners)
+		return err
+	}
+	var list []point
+	if err := json.Unmarshal(b, &list); err != nil {
+		return err
+	}
+	if len(list) != 2 {
+		return fmt.Errorf("%s: a box is [[x, y, z], [x, y, z]], two opposite corners", b)
+	}
+	*x = box{r3.Vec(list[0]), r3.Vec(list[1])}
+	return nil
 }
 
 // point is a point in the arguments of a call: [x, y, z] or "x,y,z".

@@ -21,6 +21,8 @@ type arguments struct {
 	Lines         *bool  `json:"lines"`          // topology: false leaves the lines out
 	At            *point `json:"at"`             // probe, trace: [x, y, z]
 	Through       points `json:"through"`        // loop: [[x, y, z], ...]
+	Parts         parts  `json:"parts"`          // loop, in place of through: numbers of parts
+	Box           *box   `json:"box"`            // loop, likewise: two corners
 	handArguments
 }
 
@@ -52,7 +54,15 @@ var calls = []call{
 		}
 		return s.Trace(ctx, r3.Vec(*a.At))
 	}},
-	{"loop", []string{"through"}, func(ctx context.Context, s *Study, a *arguments) (any, error) {
+	{"loop", []string{"through", "parts", "box"}, func(ctx context.Context, s *Study, a *arguments) (any, error) {
+		switch {
+		case a.Parts != nil && a.Box == nil && a.Through == nil:
+			return s.Parts(ctx, a.Parts)
+		case a.Box != nil && a.Parts == nil && a.Through == nil:
+			return s.Box(ctx, a.Box[0], a.Box[1])
+		case a.Box != nil || a.Parts != nil:
+			return nil, errTwoRegions
+		}
 		return s.Loop(ctx, a.Through)
 	}},
 	{"ledger", handNames, func(_ context.Context, _ *Study, a *arguments) (any, error) {
@@ -66,8 +76,10 @@ var calls = []call{
 
 var errNoPoint = errors.New(`the point is missing: give {"at": [x, y, z]}`)
 
+var errTwoRegions = errors.New("a loop goes through points, or is about parts, or about a box: give one of the three")
+
 // Call answers the question of that name with the JSON that the command of that name prints with --json: inspect,
-// topology {min_robustness, lines}, probe {at}, trace {at}, loop {through}, ledger {body, nodes, saddles, ...}.
+// topology {min_robustness, lines}, probe {at}, trace {at}, loop {through}, {parts} or {box}, ledger {body, nodes, saddles, ...}.
 // Arguments are a JSON object, or nothing; a name or an argument that is not known is an error.
 func (s *Study) Call(ctx context.Context, name string, args json.RawMessage) (json.RawMessage, error) {
 	i := slices.IndexFunc(calls, func(c call) bool { return c.name == name })

@@ -6,6 +6,7 @@ import (
 	"encoding/json"
 	"errors"
 	"math"
+	"slices"
 	"strings"
 	"testing"
 
@@ -54,6 +55,10 @@ func TestCallGivesTheSameBytes(t *testing.T) {
 		{"trace", `{"at": [0.3, 0.2, 0]}`, must(s.Trace(ctx, at))},
 		{"loop", `{"through": [[0.5,-0.5,0], [0.5,0.5,0], [-0.5,0.5,0], [-0.5,-0.5,0]]}`, must(s.Loop(ctx, loop))},
 		{"loop", `{"through": "0.5,-0.5,0; 0.5,0.5,0; -0.5,0.5,0; -0.5,-0.5,0"}`, must(s.Loop(ctx, loop))},
+		{"loop", `{"parts": [0]}`, must(s.Parts(ctx, []int32{0}))},
+		{"loop", `{"parts": "0, 0"}`, must(s.Parts(ctx, []int32{0}))},
+		{"loop", `{"box": [[0.5,0.5,1], [-0.5,-0.5,-1]]}`, must(s.Box(ctx, r3.Vec{X: -0.5, Y: -0.5, Z: -1}, r3.Vec{X: 0.5, Y: 0.5, Z: 1}))},
+		{"loop", `{"box": "-0.5,-0.5,-1:0.5,0.5,1"}`, must(s.Box(ctx, r3.Vec{X: -0.5, Y: -0.5, Z: -1}, r3.Vec{X: 0.5, Y: 0.5, Z: 1}))},
 		{"ledger", `{"body": "on-wall", "nodes": 3, "saddles": 2}`,
 			study.ByHand(topology.Hand{Body: topology.OnWall, Nodes: 3, Saddles: 2})},
 		{"ledger", `{"body": "patch", "saddles": 1, "exterior": 4}`,
@@ -83,6 +88,13 @@ func TestCallRefuses(t *testing.T) {
 		{"topology", `{"min_robustness": -1}`, "give a stress"},
 		{"topology", `[`, "arguments of topology"},
 		{"loop", `{"through": [[0,0,0]]}`, "three points"},
+		{"loop", `{"parts": [1]}`, "the last is part 0"},
+		{"loop", `{"parts": []}`, "no number of a part"},
+		{"loop", `{"parts": [0.5]}`, "no number of a part"},
+		{"loop", `{"parts": [0], "through": [[0,0,0]]}`, "one of the three"},
+		{"loop", `{"box": [[0,0,0]]}`, "two opposite corners"},
+		{"loop", `{"box": "0,0,0"}`, "two corners with a colon"},
+		{"loop", `{"box": [[5,5,5],[6,6,6]]}`, "no triangle is in"},
 		{"probe", `{"at": [90, 0, 0]}`, "off the surface"},
 		{"loop", `{"through": [[0.1,0,0],[0.3,0,0],[0,90,0]]}`, "off the surface"},
 		{"ledger", `{}`, "the body is missing"},
@@ -186,6 +198,27 @@ func TestTraceOfASaddle(t *testing.T) {
 	}
 	if !strings.Contains(b.String(), "\nx [m],y [m],z [m],s [m],tau_x [Pa],tau_y [Pa],tau_z [Pa],|tau| [Pa],p [Pa],cp [-]\n") {
 		t.Errorf("no heading in %.400s", b.String())
+	}
+}
+
+// The balance of a saddle's plane: as a whole, in a box with the saddle, and in one beside it.
+func TestRegionsBalance(t *testing.T) {
+	s := plane(t, 1, saddle)
+	ctx := context.Background()
+	for _, c := range []struct {
+		name   string
+		got    *study.Region
+		sum    float64
+		inside []string
+	}{
+		{"the part", must(s.Parts(ctx, []int32{0})), -1, []string{"S1"}},
+		{"a box around the saddle", must(s.Box(ctx, r3.Vec{X: -0.5, Y: -0.5, Z: -1}, r3.Vec{X: 0.5, Y: 0.5, Z: 1})), -1, []string{"S1"}},
+		{"a box beside it", must(s.Box(ctx, r3.Vec{X: 0.3, Y: -0.5, Z: -1}, r3.Vec{X: 0.9, Y: 0.5, Z: 1})), 0, []string{}},
+	} {
+		if float64(c.got.IndexSum) != c.sum || float64(c.got.Expected) != c.sum || !c.got.Balanced || c.got.Euler != 1 ||
+			!slices.Equal(c.got.Inside, c.inside) || len(c.got.Across) > 0 {
+			t.Errorf("%s: %+v", c.name, c.got)
+		}
 	}
 }
 

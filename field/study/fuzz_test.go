@@ -13,6 +13,7 @@ func FuzzCall(f *testing.F) {
 		{"inspect", "{}"}, {"topology", `{"min_robustness": "1%"}`}, {"probe", `{"at": [0.1, 0.2, 0]}`},
 		{"trace", `{"at": "0.1,0.2,0"}`}, {"loop", `{"through": [[0.5,-0.5,0],[0.5,0.5,0],[-0.5,0,0]]}`},
 		{"loop", `{"through": [[0,0,0],[0,0,0],[0,0,0]]}`}, {"ledger", `{"body": "patch", "nodes": 1}`},
+		{"loop", `{"parts": [0]}`}, {"loop", `{"box": [[0,0,-1],[0.5,0.5,1]]}`},
 		{"probe", `{"at": [1e99, 0, 0]}`}, {"topology", `{"min_robustness": 1e308}`},
 	} {
 		f.Add(s[0], s[1])
