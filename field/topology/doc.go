@@ -27,6 +27,19 @@
 // A point that another one is nearer to than three edges, or whose type the triangle contradicts, is not resolved by the
 // mesh; several points that a zero of second order (a monkey saddle, a dipole) is taken apart into are put together.
 //
+// # Lines
+//
+// Separatrices leave saddles along the eigenvectors of their Jacobians; cycles are closed streamlines that their neighbours
+// approach or leave; open lines are where streamlines converge, or part, without a saddle. Whether a line separates or
+// attaches is told by its neighbours, on the whole and by reaches. The types closed, horn and open are the three simple
+// types of primary separation of Chapman and Yates (Applied Mechanics Reviews 44, 1991; Types I, II and III by our
+// memory of the paper: only its abstract was seen), of which the first two are the global and the last the local
+// separation of Tobak and Peake (Annual Review of Fluid Mechanics 14, 1982). A cycle that attracts is the one that Surana,
+// Grunberg and Haller (Journal of Fluid Mechanics 564, 2006) add.
+//
+// Below a noise floor lines are traced on a field from which the cancelled points are taken out, within the regions that
+// their robustness names.
+//
 // # Loops and regions
 //
 // Along a closed way on the surface tau turns by what the points inside and the curvature inside account for; Loop reads

@@ -74,7 +74,7 @@ const (
 // LineType is the place of a line in the skeleton.
 type LineType uint8
 
-// The types of lines.
+// The types of lines; the package comment names their sources.
 const (
 	Closed LineType = iota // born at a saddle, ends at a node, a saddle or a rim
 	Horn                   // ends in or starts from a focus
