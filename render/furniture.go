@@ -1,6 +1,8 @@
 package render
 
 import (
+	"slices"
+
 	"shearprint/field/r3"
 )
 
@@ -94,22 +96,18 @@ func (r *Renderer) keyEntries(s *Scene) []keyEntry {
 			}
 		}
 	}
-	names := [...]string{
-		NeutralSense: "separatrix, neither", AttachmentSense: "attachment line", SeparationSense: "separation line",
-	}
-	for _, open := range [2]bool{false, true} {
-		for _, sense := range [...]Sense{SeparationSense, AttachmentSense, NeutralSense} {
-			for i := range s.Lines {
-				if l := &s.Lines[i]; l.Sense == sense && l.Open == open {
-					text := names[sense]
-					if open {
-						text = "open " + text
-					}
-					rows = append(rows, keyEntry{text: text, line: &Line{Sense: sense, Open: open}})
-					break
-				}
+	lines := [...]string{AttachmentSense: "attachment line", SeparationSense: "separation line"}
+	forms := [...]string{ClosedForm: "", HornForm: ", horn", OpenForm: ", open", CycleForm: ", closed orbit"}
+	for _, sense := range [...]Sense{SeparationSense, AttachmentSense} {
+		for form := range forms {
+			key := Line{Sense: sense, Form: Form(form)}
+			if slices.ContainsFunc(s.Lines, func(l Line) bool { return l.Sense == sense && l.Form == key.Form }) {
+				rows = append(rows, keyEntry{text: lines[sense] + forms[form], line: &key})
 			}
 		}
+	}
+	if slices.ContainsFunc(s.Lines, func(l Line) bool { return l.Sense == NeutralSense }) {
+		rows = append(rows, keyEntry{text: "separatrix, neither", line: &Line{Sense: NeutralSense}})
 	}
 	return rows
 }

@@ -1,5 +1,7 @@
 package render
 
+import "shearprint/field/r3"
+
 // lineStyle is the form of a line, in points.
 type lineStyle struct {
 	width, halo float64
@@ -39,15 +41,48 @@ func (c *canvas) line(curve []vertex, l *Line, col *colors, pixels float64) {
 	}
 	c.strokes(pieces, style.halo*pixels, col.halo, 0.85)
 	c.strokes(pieces, 0, col.ofLine(l.Sense), 1)
-	if l.Open {
-		const apart, size = 26, 2.6 // of the dots, in points
-		for i, d := range dashes(curve, apart*pixels, 0.01) {
-			if v := d[0]; i > 0 && v.alpha > 0.5 {
-				c.disc(v.x, v.y, (size+0.9)*pixels, col.halo, v.alpha)
-				c.disc(v.x, v.y, size*pixels, col.ofLine(l.Sense), v.alpha)
-			}
+	if l.Sense != NeutralSense {
+		c.beads(curve, l.Form, col, col.ofLine(l.Sense), pixels)
+	}
+}
+
+// beads marks the form of a line along it.
+func (c *canvas) beads(curve []vertex, form Form, col *colors, color rgb, pixels float64) {
+	const apart, size = 30, 2.6 // in points
+	if form == ClosedForm {
+		return
+	}
+	for i, d := range dashes(curve, apart/2*pixels, 0.01) {
+		v := d[0]
+		if i%2 == 0 || v.alpha <= 0.5 { // half way between ends, so that a sample in the key has one
+			continue
+		}
+		switch form {
+		case HornForm:
+			c.bar(d, col, color, 3.2*pixels, pixels)
+		case OpenForm:
+			c.disc(v.x, v.y, (size+0.9)*pixels, col.halo, v.alpha)
+			c.disc(v.x, v.y, size*pixels, color, v.alpha)
+		case CycleForm:
+			c.disc(v.x, v.y, (size+1.6)*pixels, color, v.alpha)
+			c.disc(v.x, v.y, (size-0.3)*pixels, col.halo, v.alpha)
 		}
 	}
+}
+
+// bar draws a short stroke across the beginning of a piece.
+func (c *canvas) bar(piece []vertex, col *colors, color rgb, half, pixels float64) {
+	v, last := piece[0], piece[min(len(piece)-1, 3)]
+	dx, dy := last.x-v.x, last.y-v.y
+	size := r3.Hypot(dx, dy)
+	if size == 0 {
+		return
+	}
+	dx, dy = dx/size*half, dy/size*half
+	width := 1.7 * pixels
+	across := []vertex{{v.x - dy, v.y + dx, v.alpha, width}, {v.x + dy, v.y - dx, v.alpha, width}}
+	c.strokes([][]vertex{across}, 0.8*pixels, col.halo, 0.85)
+	c.strokes([][]vertex{across}, 0, color, 1)
 }
 
 // strokes draws curves that may touch as one.

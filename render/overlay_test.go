@@ -139,6 +139,57 @@ func TestLinesAreToldApartByForm(t *testing.T) {
 	}
 }
 
+// The form of a line shows along it, and in the key: bars and dots add ink of its colour, rings have light middles, and a line of
+// neither kind has no form. A separatrix without a kind on the whole is drawn by its reaches.
+func TestFormsOfLines(t *testing.T) {
+	f := strained(5000)
+	var arc []field.Loc
+	for i := range 200 {
+		sin, cos := r3.SinCos(float64(i) * math.Pi / 100)
+		l, _ := f.Nearest(r3.Vec{X: cos, Y: sin, Z: 0.1 * sin})
+		arc = append(arc, l)
+	}
+	cam := NamedView("iso", f)
+	r := NewRenderer()
+	dark := map[[2]uint8]int{}
+	for _, sense := range []Sense{SeparationSense, NeutralSense} {
+		for form := ClosedForm; form <= CycleForm; form++ {
+			s := &Scene{Field: f, Bare: true, Flow: NoFlow, Theme: Print, Lines: []Line{{Locs: arc, Sense: sense, Form: form}}}
+			fr := shoot(t, r, s, cam, 400, 400, Still)
+			n := 0
+			for o := fr.Layers.Overlay; len(o) > 0; o = o[4:] {
+				if o[3] > 200 && o[0] < 120 {
+					n++
+				}
+			}
+			dark[[2]uint8{uint8(sense), uint8(form)}] = n
+		}
+	}
+	of := func(sense Sense, form Form) int { return dark[[2]uint8{uint8(sense), uint8(form)}] }
+	plain := of(SeparationSense, ClosedForm)
+	for _, form := range []Form{HornForm, OpenForm} {
+		if of(SeparationSense, form) < plain+20 {
+			t.Errorf("form %d: %d dark pixels, plain line %d", form, of(SeparationSense, form), plain)
+		}
+	}
+	if c := of(SeparationSense, CycleForm); c == plain || c == of(SeparationSense, OpenForm) {
+		t.Errorf("closed orbit: %d dark pixels, plain line %d", c, plain)
+	}
+	if of(NeutralSense, HornForm) != of(NeutralSense, ClosedForm) {
+		t.Errorf("neutral line with a form: %d dark pixels, without %d", of(NeutralSense, HornForm), of(NeutralSense, ClosedForm))
+	}
+	l := topology.Line{Locs: arc, Type: topology.Horn, Reaches: []topology.Reach{{First: 0, Last: 50},
+		{First: 50, Last: 150, Kind: topology.SeparationLine}, {First: 150, Last: 199, Kind: topology.AttachmentLine}}}
+	if cut := LinesOf(&l); len(cut) != 3 || cut[1].Sense != SeparationSense || cut[1].Form != HornForm || len(cut[1].Locs) != 101 ||
+		cut[2].Sense != AttachmentSense {
+		t.Errorf("a line of neither kind in three reaches is drawn as %d", len(cut))
+	}
+	l.Kind = topology.SeparationLine
+	if whole := LinesOf(&l); len(whole) != 1 || whole[0].Sense != SeparationSense || len(whole[0].Locs) != len(arc) {
+		t.Errorf("a separation line is drawn as %d", len(whole))
+	}
+}
+
 // islands counts the connected areas of a colour in the overlay.
 func islands(fr *Frame, c rgb) int {
 	w, h := fr.W, fr.H

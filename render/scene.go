@@ -82,11 +82,22 @@ const (
 	SeparationSense
 )
 
+// Form is what a line is part of.
+type Form uint8
+
+// The forms. Lines that are neither of attachment nor of separation are drawn without.
+const (
+	ClosedForm Form = iota // between points and rims
+	HornForm               // from or to a focus: with bars across
+	OpenForm               // begins or ends at no critical point: with dots
+	CycleForm              // a closed orbit: with rings
+)
+
 // Line is a separatrix, a separation or attachment line, or any other curve on the surface.
 type Line struct {
 	Locs   []field.Loc
 	Sense  Sense // separation is drawn unbroken, attachment in dashes, neutral thin
-	Open   bool  // starts at no critical point: drawn with dots between
+	Form   Form
 	Chosen bool
 	Label  string
 }

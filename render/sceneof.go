@@ -45,13 +45,15 @@ func LinesOf(l *topology.Line) []Line {
 	senses := [...]Sense{
 		topology.NoKind: NeutralSense, topology.AttachmentLine: AttachmentSense, topology.SeparationLine: SeparationSense,
 	}
-	open := l.Type == topology.Open
+	form := [...]Form{
+		topology.Closed: ClosedForm, topology.Horn: HornForm, topology.Open: OpenForm, topology.Cycle: CycleForm,
+	}[min(l.Type, topology.Cycle)]
 	if l.Kind != topology.NoKind || len(l.Reaches) < 2 {
-		return []Line{{Locs: l.Locs, Sense: senses[min(l.Kind, topology.SeparationLine)], Open: open}}
+		return []Line{{Locs: l.Locs, Sense: senses[min(l.Kind, topology.SeparationLine)], Form: form}}
 	}
 	var out []Line
 	for _, r := range l.Reaches {
-		out = append(out, Line{Locs: l.Locs[r.First : r.Last+1], Sense: senses[min(r.Kind, topology.SeparationLine)], Open: open})
+		out = append(out, Line{Locs: l.Locs[r.First : r.Last+1], Sense: senses[min(r.Kind, topology.SeparationLine)], Form: form})
 	}
 	return out
 }

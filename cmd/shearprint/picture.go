@@ -51,7 +51,9 @@ func (a *app) picture() *cobra.Command {
 lines on top.
 
 Points: a disc is a node, a disc with a curl a focus, a star a saddle, a square a degenerate point; filled where
-the flow separates, hollow where it attaches. Lines: unbroken where the flow separates, dashed where it attaches.`,
+the flow separates, hollow where it attaches. Lines: unbroken where the flow separates, dashed where it attaches,
+thin where it does neither; with bars a line runs into or out of a focus, with dots it is open, with rings
+a closed orbit.`,
 		Example: `  shearprint picture wing.ply -o wing.png
   shearprint picture wing.ply --view rear --size 3840x2160 --theme print -o rear.png
   shearprint picture wing.ply --look 2,-3,1:0.5,0,0 --colour tau --hide lines,legend -o detail.png

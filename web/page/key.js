@@ -77,7 +77,8 @@ function niceStep(x) {
 const signs = [
   ["node", "node"], ["focus", "focus"], ["saddle", "saddle"], ["degenerate", "degenerate"],
   ["filled", "filled: separation"], ["hollow", "hollow: attachment"], ["half", "half: neutral"], ["thin", "line of neither"],
-  ["unbroken", "separation line"], ["dashed", "attachment line"], ["dotted", "open line"], ["doubt", "in doubt"],
+  ["unbroken", "separation line"], ["dashed", "attachment line"], ["barred", "into or out of a focus"],
+  ["dotted", "open line"], ["ringed", "closed orbit"], ["doubt", "in doubt"],
 ];
 
 const red = "var(--separation)", green = "var(--attachment)";
@@ -94,6 +95,9 @@ const shapes = {
   thin: () => [draw("line", { x1: 0, x2: 18, y1: 7, y2: 7, stroke: "currentColor", "stroke-width": 1 })],
   dotted: () => [draw("line", { x1: 0, x2: 18, y1: 7, y2: 7, stroke: red, "stroke-width": 1.8 }),
     draw("circle", { cx: 5, cy: 7, r: 2.4, fill: red }), draw("circle", { cx: 13, cy: 7, r: 2.4, fill: red })],
+  barred: () => [draw("path", { d: "M0 7H18M5 3.6V10.4M13 3.6V10.4", fill: "none", stroke: red, "stroke-width": 1.8 })],
+  ringed: () => [draw("line", { x1: 0, x2: 18, y1: 7, y2: 7, stroke: red, "stroke-width": 1.8 }),
+    draw("circle", { cx: 9, cy: 7, r: 2.6, fill: "var(--field)", stroke: red, "stroke-width": 1.6 })],
   doubt: () => {
     const q = draw("text", { x: 9, y: 11.5, "text-anchor": "middle", "font-size": 12, fill: "currentColor" });
     q.textContent = "?";
