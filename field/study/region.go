@@ -38,7 +38,8 @@ func (s *Study) Parts(ctx context.Context, parts []int32) (*Region, error) {
 	if len(parts) > 1 {
 		words = "parts "
 	}
-	return s.region(ctx, words+strings.Trim(fmt.Sprint(parts), "[]"), func(sk *topology.Skeleton) func(int32) bool { return sk.InParts(parts...) })
+	words += strings.Trim(fmt.Sprint(parts), "[]")
+	return s.region(ctx, words, func(sk *topology.Skeleton) func(int32) bool { return sk.InParts(parts...) })
 }
 
 // Box returns the balance of the triangles whose middles lie in the box with the two given corners. It fails with
@@ -57,8 +58,9 @@ func (s *Study) region(ctx context.Context, chosen string, choose func(*topology
 	in := choose(sk)
 	r := sk.RegionOf(in)
 	if r.Triangles == 0 {
+		whole := r3.BoxOf(s.f.Points)
 		return nil, &RegionError{fmt.Sprintf("no triangle is in %s: the surface is in the box from %s to %s", chosen,
-			place(vecOf(r3.BoxOf(s.f.Points).Min)), place(vecOf(r3.BoxOf(s.f.Points).Max)))}
+			place(vecOf(whole.Min)), place(vecOf(whole.Max)))}
 	}
 	out := &Region{Schema: "shearprint/region/1", Run: s.run(), Chosen: chosen, Triangles: r.Triangles, Euler: r.Euler,
 		Count: countOf(r.Count), Inside: []string{}, Across: []string{}}
@@ -81,6 +83,7 @@ func (s *Study) region(ctx context.Context, chosen string, choose func(*topology
 // RegionError says why there is no such region.
 type RegionError struct{ what string }
 
+// Error tells what is wrong and what there is.
 func (e *RegionError) Error() string { return e.what }
 
 // WriteText writes the balance in a few lines.
