@@ -12,7 +12,7 @@ import (
 )
 
 // FuzzFind takes any bytes for a surface and a field: whatever Build accepts has a balanced ledger at every floor,
-// finite numbers, and the same points when asked again.
+// finite numbers, and lines that begin and end where they say, with any floor.
 func FuzzFind(f *testing.F) {
 	f.Add([]byte{4, 0, 1, 2, 0, 3, 1, 0, 2, 3, 1, 3, 2, 10, 20, 30, 40, 50, 60, 70, 80, 90, 15, 25, 35, 1, 2, 3, 4, 5, 6})
 	f.Add([]byte{9, 0, 1, 3, 1, 4, 3, 1, 2, 4, 2, 5, 4, 3, 4, 6, 4, 7, 6, 4, 5, 7, 5, 8, 7, 0, 0, 0, 0, 0, 0, 0, 0, 0, 255,
@@ -35,6 +35,12 @@ func FuzzFind(f *testing.F) {
 			if l := s.LedgerAt(share * fld.MaxTau); !l.Balanced {
 				t.Fatalf("floor %g: %+v", share, l)
 			}
+			opt := topology.Options{Lines: true, MinRobustness: share, Relative: true}
+			s, err := topology.Find(context.Background(), fld, opt)
+			if err != nil {
+				t.Fatal(err)
+			}
+			checkLines(t, s)
 		}
 		for i := 0; i+2 < len(raw.Points); i++ {
 			l, err := s.Loop(raw.Points[i : i+3])
