@@ -23,19 +23,23 @@ func (s *Skeleton) addAngles(r *rates) {
 	if s.Field.P == nil {
 		return
 	}
+	var b *bends
 	for i := range s.Lines {
 		l := &s.Lines[i]
 		if l.Kind == SeparationLine && len(l.Locs) > 1 {
-			l.Angle = s.anglesAlong(l, r)
+			if b == nil {
+				b = newBends(r.f)
+			}
+			l.Angle = s.anglesAlong(l, r, b)
 		}
 	}
 }
 
-func (s *Skeleton) anglesAlong(l *Line, r *rates) []float64 {
-	f := s.Field
+func (s *Skeleton) anglesAlong(l *Line, r *rates, b *bends) []float64 {
+	f := r.f
 	terms := make([]angleTerm, len(l.Locs))
 	for i, loc := range l.Locs {
-		terms[i] = termAt(f, r, loc)
+		terms[i] = termAt(f, r, b, loc)
 	}
 	m := terms[0].frozen()
 	if l.From >= 0 {
@@ -96,7 +100,7 @@ func step(m, ds float64, c angleTerm) float64 {
 // smallStep is the exponent below which e^x - 1 is x to rounding's half.
 const smallStep = 1e-8
 
-func termAt(f *field.Field, r *rates, loc field.Loc) angleTerm {
+func termAt(f *field.Field, r *rates, b *bends, loc field.Loc) angleTerm {
 	s := f.At(loc)
 	n := f.Corner(loc.Tri).Normal().Unit()
 	left := n.Cross(s.Tau3.Unit())
@@ -106,17 +110,7 @@ func termAt(f *field.Field, r *rates, loc field.Loc) angleTerm {
 	for k, v := range f.Tris[loc.Tri] {
 		slope = slope.AddScaled(loc.Bary[k], pressureSlope(f, v))
 	}
-	// The derivative of the normal along tau, from the triangle's corners.
-	corner := f.Corner(loc.Tri)
-	twice := corner.Normal().Norm()
-	var bend r3.Vec
-	for k, v := range f.Tris[loc.Tri] {
-		opposite := corner[(k+2)%3].Sub(corner[(k+1)%3])
-		if twice > 0 {
-			bend = bend.AddScaled(n.Cross(opposite).Dot(s.Tau3)/twice, f.Normals[v])
-		}
-	}
-	c.push = finite(slope.Dot(left)/2 - left.Dot(bend))
+	c.push = finite(slope.Dot(left)/2 - left.Dot(b.along(loc.Tri, s.Tau3)))
 	return c
 }
 
