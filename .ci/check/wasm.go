@@ -6,10 +6,13 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"math/rand/v2"
 	"os"
 	"os/exec"
 	"path/filepath"
 	"strings"
+
+	"shearprint/field/exact"
 )
 
 // programs are what the browser loads.
@@ -62,6 +65,7 @@ var (
 		{"inspect", "--json"},
 		{"topology", "--json"},
 		{"topology", "--json", "--min-robustness", "1%"},
+		{"topology", "--json", "--min-robustness", "20%"},
 		{"picture", "--view", "iso", "--size", "640x360"},
 	}
 )
@@ -93,6 +97,11 @@ func sameBytes() error {
 	if len(runs) == 0 {
 		return errors.New("no run to compare")
 	}
+	noise := filepath.Join(dir, "noise.ply")
+	if err := os.WriteFile(noise, noisyRun(), 0o600); err != nil {
+		return err
+	}
+	runs = append(runs, noise)
 	var errs []error
 	for _, run := range runs {
 		for _, command := range sameCommands {
@@ -111,6 +120,25 @@ func sameBytes() error {
 		}
 	}
 	return errors.Join(errs...)
+}
+
+// noisyRun returns a run of white noise, in which everything that is rare in computed runs happens many times over.
+func noisyRun() []byte {
+	raw := exact.Sphere(1, 2000)
+	rng := rand.New(rand.NewPCG(3, 5))
+	var b bytes.Buffer
+	fmt.Fprintf(&b, "ply\nformat ascii 1.0\nelement vertex %d\n", len(raw.Points))
+	for _, name := range []string{"x", "y", "z", "tau_x", "tau_y", "tau_z", "p"} {
+		fmt.Fprintf(&b, "property double %s\n", name)
+	}
+	fmt.Fprintf(&b, "element face %d\nproperty list uchar int vertex_indices\nend_header\n", len(raw.Tris))
+	for _, p := range raw.Points {
+		fmt.Fprintln(&b, p.X, p.Y, p.Z, rng.NormFloat64(), rng.NormFloat64(), rng.NormFloat64(), rng.NormFloat64())
+	}
+	for _, t := range raw.Tris {
+		fmt.Fprintln(&b, 3, t[0], t[1], t[2])
+	}
+	return b.Bytes()
 }
 
 // result runs a command of shearprint and returns its standard output, or the picture that it writes. A ledger that does
