@@ -136,7 +136,7 @@ func (w *walk) flowThrough() int32 {
 	for ok {
 		h := w.step * w.long
 		next, k4, err, fine := w.rungeKutta(h, k1)
-		if !fine { // a stage met a zero of tau: smaller steps, until the zero itself is reached
+		if !fine { // a stage met a zero of tau or passed it: smaller steps, until the zero itself is reached
 			w.step /= 4
 			if w.step < minStep {
 				break
@@ -217,6 +217,11 @@ func (w *walk) rungeKutta(h float64, k1 r3.Vec2) (next, k4 r3.Vec2, err float64,
 	if !ok2 || !ok3 {
 		return next, k4, 0, false
 	}
+	// A stage that turns back has passed a zero, and the estimate says nothing: steps as short as the tolerance would pass it
+	// again and again. In a triangle that swings the direction may turn round anywhere.
+	if !w.swings && (k1.Dot(k2) <= 0 || k1.Dot(k3) <= 0) {
+		return next, k4, 0, false
+	}
 	next = w.p.AddScaled(float64(h*2)/9, k1).AddScaled(h/3, k2).AddScaled(float64(h*4)/9, k3)
 	k4, ok = w.unit(next)
 	e := k1.Scale(-5./72).AddScaled(1./12, k2).AddScaled(1./9, k3).AddScaled(-1./8, k4)
@@ -232,30 +237,41 @@ func hermite(a, b, da, db r3.Vec2, h, u float64) r3.Vec2 {
 	return p.AddScaled(float64(u*v*v*h), da).AddScaled(-float64(uu*v*h), db)
 }
 
+// maxPasses bounds the search for an earlier crossing: a cubic crosses each of the two other edges out and back once.
+const maxPasses = 4
+
 // exit returns the edge through which the step leaves the cell first, and the share of the step at which it does; -1
 // where it stays inside.
 func (w *walk) exit(a, b, da, db r3.Vec2, h float64) (edge int32, share float64) {
 	edge, share = -1, 1
-	end := w.bary(b)
-	for k := range int32(3) {
-		if end[k] >= 0 {
-			continue
-		}
-		// Bisection on the weight that turns negative: it is positive, or nought at an edge just entered, at the beginning.
-		lo, hi := 0.0, 1.0
-		for range 60 {
-			mid := (lo + hi) / 2
-			if w.bary(hermite(a, b, da, db, h, mid))[k] >= 0 {
-				lo = mid
-			} else {
-				hi = mid
+	end, below, found := w.bary(b), 0.0, true
+	for pass := 0; found && pass < maxPasses; pass++ {
+		found = false
+		top := share
+		for k := range int32(3) {
+			if end[k] >= below || edge == (k+1)%3 {
+				continue
 			}
-			if hi-lo < 1e-14 {
-				break
+			// Bisection on the weight that turns negative: it is positive, or nought at an edge just entered, at the beginning.
+			lo, hi := 0.0, top
+			for range 60 {
+				mid := (lo + hi) / 2
+				if w.bary(hermite(a, b, da, db, h, mid))[k] >= 0 {
+					lo = mid
+				} else {
+					hi = mid
+				}
+				if hi-lo < 1e-14 {
+					break
+				}
+			}
+			if hi <= share {
+				edge, share, found = (k+1)%3, hi, true // the edge opposite to corner k begins at corner k+1
 			}
 		}
-		if hi <= share {
-			edge, share = (k+1)%3, hi // the edge opposite to corner k begins at corner k+1
+		// The step may have left over another edge before, over which it is back at its end: near a corner.
+		if found {
+			end, below = w.bary(hermite(a, b, da, db, h, share)), -cornerShare
 		}
 	}
 	return edge, share
