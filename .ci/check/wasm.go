@@ -60,7 +60,7 @@ func wasmTest() error {
 
 // sameRuns are runs, and sameCommands what is asked of each, for the comparison of native and WebAssembly output.
 var (
-	sameRuns     = []string{"testdata/demo/*.glb", "testdata/runs/*.ply", "testdata/runs/*.cgns"}
+	sameRuns     = []string{"testdata/demo/*.glb", "testdata/runs/*.ply", "testdata/runs/*.cgns.gz"}
 	sameCommands = [][]string{
 		{"inspect", "--json"},
 		{"topology", "--json"},
@@ -92,10 +92,10 @@ func sameBytes() error {
 		if err != nil {
 			return err
 		}
+		if len(found) == 0 {
+			return fmt.Errorf("no run is called %s", pattern)
+		}
 		runs = append(runs, found...)
-	}
-	if len(runs) == 0 {
-		return errors.New("no run to compare")
 	}
 	noise := filepath.Join(dir, "noise.ply")
 	if err := os.WriteFile(noise, noisyRun(), 0o600); err != nil {
