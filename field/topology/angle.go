@@ -7,8 +7,8 @@ import (
 	"shearprint/field/r3"
 )
 
-// addAngles computes, along separation lines, the angle at which the surface that leaves the wall stands to it, where the
-// pressure is known: measured from the wall on the left of the line, in (0, pi).
+// addAngles computes, along separation lines, the angle [rad] at which the surface that leaves the wall stands to it, where
+// the pressure is known: measured from the wall on the left of the line, in (0, pi).
 //
 // The surface leaves at the distance m z to the left of the line, at the height z. From wall quantities (Surana, Grunberg
 // and Haller 2006, from memory; the form used here is re-derived), with arc length l along the line, e along tau, and left
@@ -19,6 +19,15 @@ import (
 // where across and along are the rates of tau across and along the line. At a critical point m is the solution of
 // (2 J + tr J) m = -grad p. In two dimensions it is the tan(theta) = -3 (dtau/dx)/(dp/dx) of Oswatitsch 1958 and Lighthill
 // 1963.
+//
+// The derivation: next to the wall mu u = z tau + z^2/2 (grad p - (div n) tau) + ..., since friction where the fluid sticks is
+// mu (d2u/dz2 + div n du/dz); the part with div n is along tau, and so not across the line. The foot of a fluid particle
+// at the height z runs with (1 + z grad n)^-1 u, which is the term with grad n. The particle rises with mu dz/dt = -z^2/2 div
+// tau; that the area of the wall grows with z counts only at z^3. So the place m z to the left of the line moves with
+// mu d(m z)/dt = z (m z across) + z^2 ((left . grad p)/2 - left . (grad n) tau), while mu dl/dt = z |tau|.
+//
+// Along is the derivative of |tau| along the line, and across the rest of the divergence. The rates at vertices, which are
+// along and across the tau of each vertex, would not do beside a saddle, where tau points anywhere.
 func (s *Skeleton) addAngles(r *rates) {
 	if s.Field.P == nil {
 		return
@@ -39,11 +48,12 @@ func (s *Skeleton) anglesAlong(l *Line, r *rates, b *bends) []float64 {
 	f := r.f
 	terms := make([]angleTerm, len(l.Locs))
 	for i, loc := range l.Locs {
-		terms[i] = termAt(f, r, b, loc)
+		before, after := f.Position(l.Locs[max(i-1, 0)]), f.Position(l.Locs[min(i+1, len(l.Locs)-1)])
+		terms[i] = termAt(f, r, b, loc, after.Sub(before).Unit())
 	}
-	m := terms[0].frozen()
+	m := frozen(terms[0].to(terms[1]))
 	if l.From >= 0 {
-		m = s.atPoint(&s.Points[l.From], terms[min(1, len(terms)-1)].left)
+		m = s.atPoint(&s.Points[l.From], terms[0].left)
 	}
 	turns := 1
 	if l.Type == Cycle {
@@ -53,8 +63,7 @@ func (s *Skeleton) anglesAlong(l *Line, r *rates, b *bends) []float64 {
 	for range turns {
 		for i := range terms {
 			if i > 0 {
-				ds := f.Position(l.Locs[i]).Sub(f.Position(l.Locs[i-1])).Norm()
-				m = step(m, ds, terms[i-1].mean(terms[i]))
+				m = step(m, terms[i-1].to(terms[i]))
 			}
 			out[i] = r3.Atan2(1, m)
 		}
@@ -66,32 +75,40 @@ func (s *Skeleton) anglesAlong(l *Line, r *rates, b *bends) []float64 {
 // contract by a factor of e per turn or so, and the slope forgets with at least the power 3/2 of it.
 const cycleTurns = 20
 
-// angleTerm holds the coefficients of |tau| dm/dl = rate m + push at a place.
+// angleTerm holds what tells of the slope at a place of a line.
 type angleTerm struct {
-	rate, push, tau float64
-	left            r3.Vec
+	at, left       r3.Vec
+	tau, div, push float64 // push is the change of |tau| dm/dl that does not depend on m
 }
 
-func (a angleTerm) mean(b angleTerm) angleTerm {
-	return angleTerm{rate: (a.rate + b.rate) / 2, push: (a.push + b.push) / 2, tau: (a.tau + b.tau) / 2}
+// angleStep holds the coefficients of |tau| dm/dl = rate m + push over a distance.
+type angleStep struct{ distance, tau, rate, push float64 }
+
+func (a angleTerm) to(b angleTerm) angleStep {
+	c := angleStep{distance: b.at.Sub(a.at).Norm(), tau: (a.tau + b.tau) / 2, push: (a.push + b.push) / 2}
+	c.rate = float64(0.75 * (a.div + b.div))
+	if c.distance > 0 {
+		c.rate = finite(c.rate - (b.tau-a.tau)/c.distance)
+	}
+	return c
 }
 
 // frozen returns the slope at which nothing changes along the line.
-func (a angleTerm) frozen() float64 {
-	if a.rate == 0 {
+func frozen(c angleStep) float64 {
+	if c.rate == 0 {
 		return 0
 	}
-	return finite(-a.push / a.rate)
+	return finite(-c.push / c.rate)
 }
 
-// step goes on by ds with the coefficients held: exact for constant ones, whatever the step.
-func step(m, ds float64, c angleTerm) float64 {
+// step goes on with the coefficients held: exact for constant ones, whatever the step.
+func step(m float64, c angleStep) float64 {
 	if !(c.tau > 0) {
 		return m
 	}
-	x := float64(c.rate*ds) / c.tau
+	x := float64(c.rate*c.distance) / c.tau
 	if math.Abs(x) < smallStep {
-		return finite(m + float64(float64(c.push*ds)/c.tau))
+		return finite(m + float64(float64(c.push*c.distance)/c.tau))
 	}
 	g := r3.Exp(math.Min(x, mostExponent))
 	return finite(float64(m*g) + float64(c.push/c.rate*(g-1)))
@@ -100,17 +117,15 @@ func step(m, ds float64, c angleTerm) float64 {
 // smallStep is the exponent below which e^x - 1 is x to rounding's half.
 const smallStep = 1e-8
 
-func termAt(f *field.Field, r *rates, b *bends, loc field.Loc) angleTerm {
-	s := f.At(loc)
-	n := f.Corner(loc.Tri).Normal().Unit()
-	left := n.Cross(s.Tau3.Unit())
-	c := angleTerm{tau: s.Tau.Norm(), left: left}
-	c.rate = float64(1.5*r.at(r.across, loc)) + float64(0.5*r.at(r.along, loc))
+// termAt takes the direction of the line from its places: beside critical points tau itself tells it badly.
+func termAt(f *field.Field, r *rates, b *bends, loc field.Loc, e r3.Vec) angleTerm {
+	left := f.Corner(loc.Tri).Normal().Cross(e).Unit()
+	c := angleTerm{at: f.Position(loc), left: left, tau: f.At(loc).Tau.Norm(), div: r.at(r.along, loc) + r.at(r.across, loc)}
 	var slope r3.Vec
 	for k, v := range f.Tris[loc.Tri] {
 		slope = slope.AddScaled(loc.Bary[k], pressureSlope(f, v))
 	}
-	c.push = finite(slope.Dot(left)/2 - left.Dot(b.along(loc.Tri, s.Tau3)))
+	c.push = finite(slope.Dot(left)/2 - float64(c.tau*left.Dot(b.along(loc.Tri, e))))
 	return c
 }
 

@@ -153,7 +153,12 @@ func angleAt(r []risen, phi float64) float64 {
 	return r[min(i, len(r)-1)].angle
 }
 
-// Along a closed line the angle depends on the whole turn and on nothing else: against streamlines of the exact flow.
+// angleError is the least error of angles that the tests below call wrong [rad]. Edges of the mesh turn by 0.05, and the
+// curvature of the wall is worth up to 0.6.
+const angleError = 0.01
+
+// Along a closed line the angle depends on the whole turn, not on where the list of places begins: against streamlines of the
+// exact flow. Neighbours of the slowest cycle come closer by a factor of 7 only in a turn.
 func TestAngleOnKnottedCycle(t *testing.T) {
 	for _, c := range []struct{ rate, lean, turns float64 }{{1.2, 0, 3}, {1.2, 1, 3}, {1.2, -1, 3}, {0.3, 0.2, 7}} {
 		k := knotted{func(float64) float64 { return 1 }, c.rate, c.lean}
@@ -165,12 +170,12 @@ func TestAngleOnKnottedCycle(t *testing.T) {
 				continue
 			}
 			found++
-			worst := 0.
 			for i, loc := range l.Locs {
-				w := angleAt(want, onTorus(f.Position(loc)).phi)
-				worst = max(worst, math.Abs(l.Angle[i]-w))
+				phi := onTorus(f.Position(loc)).phi
+				if w := angleAt(want, phi); !(math.Abs(l.Angle[i]-w) < angleError) {
+					t.Fatalf("%+v: angle %g at phi = %g, want %g", c, l.Angle[i], phi, w)
+				}
 			}
-			t.Log(c, worst, want[0], want[len(want)-1], l.Angle[0])
 		}
 		if found != 1 {
 			t.Errorf("%+v: %d separation cycles, want 1", c, found)
@@ -178,31 +183,31 @@ func TestAngleOnKnottedCycle(t *testing.T) {
 	}
 }
 
-// From a saddle the line runs both ways to a node; what is on the left changes sides.
+// From a saddle the line runs both ways to a node; what is on the left changes sides. Close to the points tau hardly tells the
+// line's direction, so the places there count.
 func TestAngleOnKnottedSeparatrices(t *testing.T) {
 	for _, lean := range []float64{0, 1, -1} {
 		k := knotted{math.Sin, 2, lean}
 		f := k.field(t, 40000)
 		s := find(t, f, withLines)
-		const begin, end = 0.02, 3
-		ways := map[float64][]risen{1: k.rise(t, 1e-4, end, 1e-9), -1: k.rise(t, -1e-4, -end, 1e-9)}
+		const begin, end = 0.02, 3.1
 		found := 0
 		for _, l := range s.Lines {
 			if l.Kind != topology.SeparationLine || l.From < 0 || f.Position(s.Points[l.From].Loc).X < 0 {
 				continue
 			}
 			found++
-			middle := onTorus(f.Position(l.Locs[len(l.Locs)/2])).phi
-			want := ways[math.Copysign(1, middle)]
-			worst := math.Abs(l.Angle[0] - angleAt(want, math.Copysign(begin, middle)))
-			first := worst
+			way := math.Copysign(1, onTorus(f.Position(l.Locs[len(l.Locs)/2])).phi)
+			want := k.rise(t, way*1e-4, way*end, 1e-9)
+			if w := angleAt(want, way*begin); !(math.Abs(l.Angle[0]-w) < angleError) {
+				t.Errorf("lean %g: angle %g at the saddle, want %g", lean, l.Angle[0], w)
+			}
 			for i, loc := range l.Locs {
 				phi := onTorus(f.Position(loc)).phi
-				if math.Abs(phi) > begin && math.Abs(phi) < end {
-					worst = max(worst, math.Abs(l.Angle[i]-angleAt(want, phi)))
+				if w := angleAt(want, phi); way*phi > begin && way*phi < end && !(math.Abs(l.Angle[i]-w) < angleError) {
+					t.Fatalf("lean %g: angle %g at phi = %g, want %g", lean, l.Angle[i], phi, w)
 				}
 			}
-			t.Log(lean, middle, worst, first, want[0], want[len(want)/2], want[len(want)-1])
 		}
 		if found != 2 {
 			t.Errorf("lean %g: %d lines from the saddle, want 2", lean, found)

@@ -1,11 +1,9 @@
 package topology_test
 
 import (
-	"math/rand/v2"
 	"slices"
 	"testing"
 
-	"shearprint/field"
 	"shearprint/field/r3"
 	"shearprint/field/topology"
 )
@@ -28,15 +26,8 @@ func TestNoiseKeepsTheGraph(t *testing.T) {
 				continue
 			}
 			raw := c.Raw(20000)
-			rng := rand.New(rand.NewPCG(11, 12))
 			sigma := share * clean.Field.MaxTau / 4
-			for i := range raw.Tau {
-				raw.Tau[i] = raw.Tau[i].Add(r3.Vec{X: rng.NormFloat64(), Y: rng.NormFloat64(), Z: rng.NormFloat64()}.Scale(sigma))
-			}
-			f, err := field.Build(raw)
-			if err != nil {
-				t.Fatal(err)
-			}
+			f := noisy(t, raw, sigma)
 			s := find(t, f, topology.Options{Lines: true, MinRobustness: 4 * sigma})
 			if d := dangling(s); len(d) > 0 {
 				t.Errorf("%s with %g noise: %v", name, share, d)

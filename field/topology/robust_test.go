@@ -145,6 +145,16 @@ func TestRobustnessAgreesWithFlooding(t *testing.T) {
 	})
 }
 
+// noisy builds the field with white noise of the given standard deviation in each component.
+func noisy(t *testing.T, raw field.Raw, sigma float64) *field.Field {
+	t.Helper()
+	rng := rand.New(rand.NewPCG(11, 12))
+	for i := range raw.Tau {
+		raw.Tau[i] = raw.Tau[i].Add(r3.Vec{X: rng.NormFloat64(), Y: rng.NormFloat64(), Z: rng.NormFloat64()}.Scale(sigma))
+	}
+	return build(t, raw)
+}
+
 // White noise of 1, 5 and 10 % of the largest |tau| makes many weak points; above the noise exactly the points of the
 // clean field are left. Noise of standard deviation s in each component reaches 4 s somewhere.
 func TestNoiseKeepsStrongPoints(t *testing.T) {
@@ -153,15 +163,8 @@ func TestNoiseKeepsStrongPoints(t *testing.T) {
 		for _, share := range []float64{0.01, 0.05, 0.1} {
 			raw := c.Raw(20000)
 			clean := find(t, c.Field(20000), topology.Options{})
-			rng := rand.New(rand.NewPCG(11, 12))
 			sigma := share * clean.Field.MaxTau / 4
-			for i := range raw.Tau {
-				raw.Tau[i] = raw.Tau[i].Add(r3.Vec{X: rng.NormFloat64(), Y: rng.NormFloat64(), Z: rng.NormFloat64()}.Scale(sigma))
-			}
-			f, err := field.Build(raw)
-			if err != nil {
-				t.Fatal(err)
-			}
+			f := noisy(t, raw, sigma)
 			s := find(t, f, topology.Options{MinRobustness: 4 * sigma})
 			if len(s.Points) != len(c.Points) || !s.Ledger.Balanced {
 				t.Errorf("%s with %g noise: %d points of %d, want %d", name, share, len(s.Points), len(s.Points)+s.Cancelled,
