@@ -117,15 +117,21 @@ func TestLabelsAvoidOneAnother(t *testing.T) {
 	}
 }
 
+// around returns n places on a circle around the sphere, the last of them the first again.
+func around(f *field.Field, n int) []field.Loc {
+	var out []field.Loc
+	for i := range n {
+		sin, cos := r3.SinCos(2 * math.Pi * float64(i) / float64(n-1))
+		l, _ := f.Nearest(r3.Vec{X: cos, Y: sin, Z: 0.1 * sin})
+		out = append(out, l)
+	}
+	return out
+}
+
 // A line around the sphere shows on the front only; separation is one unbroken piece there, attachment several.
 func TestLinesAreToldApartByForm(t *testing.T) {
 	f := strained(5000)
-	var equator []field.Loc
-	for i := range 721 {
-		sin, cos := r3.SinCos(float64(i) * math.Pi / 360)
-		l, _ := f.Nearest(r3.Vec{X: cos, Y: sin, Z: 0.1 * sin})
-		equator = append(equator, l)
-	}
+	equator := around(f, 721)
 	cam := NamedView("iso", f)
 	r := NewRenderer()
 	pieces := map[Sense]int{}
@@ -143,12 +149,7 @@ func TestLinesAreToldApartByForm(t *testing.T) {
 // neither kind has no form. A separatrix without a kind on the whole is drawn by its reaches.
 func TestFormsOfLines(t *testing.T) {
 	f := strained(5000)
-	var arc []field.Loc
-	for i := range 200 {
-		sin, cos := r3.SinCos(float64(i) * math.Pi / 100)
-		l, _ := f.Nearest(r3.Vec{X: cos, Y: sin, Z: 0.1 * sin})
-		arc = append(arc, l)
-	}
+	arc := around(f, 200)
 	cam := NamedView("iso", f)
 	r := NewRenderer()
 	dark := map[[2]uint8]int{}
