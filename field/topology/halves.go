@@ -31,10 +31,7 @@ func (b *builder) findHalves() map[int]halfPlace {
 				}
 				a := b.f.Points[b.f.Tail(h)]
 				d := b.f.Points[b.f.Tip(h)].Sub(a)
-				u := 0.0
-				if dd := d.Dot(d); dd > 0 {
-					u = math.Min(1, math.Max(0, p.Position.Sub(a).Dot(d)/dd))
-				}
+				u := footShare(a, d, p.Position)
 				if off := a.AddScaled(u, d).Sub(p.Position).Norm(); off < least {
 					least, halves[i] = off, halfPlace{k, e, u}
 				}

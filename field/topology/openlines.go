@@ -215,14 +215,20 @@ func (b *builder) distance(locs []field.Loc, p r3.Vec) float64 {
 	for _, l := range locs[1:] {
 		next := b.f.Position(l)
 		d := next.Sub(q)
-		u := 0.0
-		if dd := d.Dot(d); dd > 0 {
-			u = math.Min(1, math.Max(0, p.Sub(q).Dot(d)/dd))
-		}
+		u := footShare(q, d, p)
 		least = math.Min(least, p.Sub(q.AddScaled(u, d)).Norm())
 		q = next
 	}
 	return least
+}
+
+// footShare returns the share of the way d from a at which p is nearest, from 0 to 1.
+func footShare(a, d, p r3.Vec) float64 {
+	dd := d.Dot(d)
+	if !(dd > 0) {
+		return 0
+	}
+	return math.Min(1, math.Max(0, p.Sub(a).Dot(d)/dd))
 }
 
 // openLine makes a line of a confirmed candidate.
